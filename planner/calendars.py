@@ -1,0 +1,64 @@
+"""Calendars as sorted, disjoint half-open intervals of whole seconds, and the few operations planning needs."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from datetime import time, timedelta
+
+from planner.clock import Clock
+
+Interval = tuple[int, int]
+Calendar = tuple[Interval, ...]
+
+
+def tidy(intervals: Iterable[Interval]) -> Calendar:
+    """Sorted union of any intervals; empty ones vanish, touching ones join."""
+    merged: list[Interval] = []
+    for begin, finish in sorted(interval for interval in intervals if interval[0] < interval[1]):
+        if merged and begin <= merged[-1][1]:
+            merged[-1] = (merged[-1][0], max(finish, merged[-1][1]))
+        else:
+            merged.append((begin, finish))
+    return tuple(merged)
+
+
+def both(first: Calendar, second: Calendar) -> Calendar:
+    """Seconds that lie in both calendars."""
+    return tidy((max(a, c), min(b, d)) for a, b in first for c, d in second)
+
+
+def without(first: Calendar, second: Calendar) -> Calendar:
+    """Seconds of ``first`` that are not in ``second``."""
+    left = list(first)
+    for begin, finish in second:
+        left = [part for a, b in left for part in ((a, min(b, begin)), (max(a, finish), b)) if part[0] < part[1]]
+    return tidy(left)
+
+
+def at_least(calendars: list[Calendar], count: int) -> Calendar:
+    """Seconds covered by at least ``count`` of the calendars (``count`` ≥ 1)."""
+    edges = sorted([(begin, 1) for c in calendars for begin, _ in c] + [(end, -1) for c in calendars for _, end in c])
+    covered: list[Interval] = []
+    depth, since = 0, 0
+    for at, change in edges:
+        if depth >= count and at > since:
+            covered.append((since, at))
+        depth += change
+        since = at
+    return tidy(covered)
+
+
+def weekly(clock: Clock, horizon_s: int, days: frozenset[int], opens: time, closes: time) -> Calendar:
+    """The wall-clock hours ``opens``–``closes`` on weekdays ``days`` (0 = Monday), cut to ``[0, horizon_s)``.
+
+    ``closes`` at or before ``opens`` runs into the next day; 00:00 as ``closes`` is the end of the day.
+    """
+    intervals = []
+    day = clock.start - timedelta(days=1)
+    while clock.second(day) <= horizon_s + 86400:
+        if day.weekday() in days:
+            last = day if closes > opens else day + timedelta(days=1)
+            begin, finish = clock.second(clock.wall(day, opens)), clock.second(clock.wall(last, closes))
+            intervals.append((max(0, begin), min(horizon_s, finish)))
+        day += timedelta(days=1)
+    return tidy(intervals)

@@ -1,0 +1,145 @@
+"""What a target may ask for: a filling, a temperature, a range. Text outside, numbers inside."""
+
+from __future__ import annotations
+
+import math
+import re
+from dataclasses import dataclass
+from fractions import Fraction
+from typing import Annotated, Any
+
+from pydantic import PlainSerializer, PlainValidator, WithJsonSchema
+
+from planner.units import Amount, parse_amount
+
+_FRACTION = re.compile(r"\s*([+\-−]?\d{1,4})\s*/\s*(\d{1,4})\s*")
+_RANGE = re.compile(r"(.+?)\s+to\s+(.+)")
+_FILLING = 'expected a filling such as "1/3", 2 or 2.5'
+
+
+def read_filling(written: object) -> Amount:
+    """A filling factor as 2, 2.5 or "p/q"; not zero. Raises ValueError otherwise."""
+    if isinstance(written, Amount):
+        return written
+    if isinstance(written, bool) or not isinstance(written, (int, float, str)):
+        raise ValueError(_FILLING)
+    text = str(written).strip()
+    if match := _FRACTION.fullmatch(text):
+        top, bottom = int(match[1].replace("−", "-")), int(match[2])
+        if bottom == 0:
+            raise ValueError(f"{_FILLING}: the denominator is zero")
+        value = top / bottom
+    else:
+        try:
+            value = float(text.replace("−", "-"))
+        except ValueError:
+            raise ValueError(_FILLING) from None
+    if not math.isfinite(value) or value == 0:
+        raise ValueError(f"{_FILLING}: not zero, not infinite")
+    return Amount(value, text)
+
+
+def filling_name(value: float) -> str:
+    """A filling as the trade writes it: "1/3" for a simple fraction, else a decimal."""
+    if isinstance(value, Amount):
+        return value.text
+    simple = Fraction(value).limit_denominator(30)
+    if abs(simple - value) < 1e-9:
+        return str(simple)
+    return f"{value:.4f}".rstrip("0")
+
+
+@dataclass(frozen=True, slots=True)
+class Range:
+    """Two ends in the order written, and their text."""
+
+    first: float
+    last: float
+    text: str
+
+
+def _read_range(written: Any, one: Any, expected: str) -> Range:
+    if isinstance(written, Range):
+        return written
+    match = _RANGE.fullmatch(written.strip()) if isinstance(written, str) else None
+    if match is None:
+        raise ValueError(expected)
+    first, last = one(match[1]), one(match[2])
+    if first == last:
+        raise ValueError(f"{expected}: the two ends are the same")
+    return Range(float(first), float(last), written.strip())
+
+
+def read_field_range(written: object) -> Range:
+    """ "0 T to 12 T", in tesla. Raises ValueError otherwise."""
+    return _read_range(written, lambda part: parse_amount(part, "T"), 'expected a range such as "0 T to 12 T"')
+
+
+def read_volt_range(written: object) -> Range:
+    """ "-0.5 V to 0.5 V", in volt. Raises ValueError otherwise."""
+    return _read_range(written, lambda part: parse_amount(part, "V"), 'expected a range such as "-0.5 V to 0.5 V"')
+
+
+def read_filling_range(written: object) -> Range:
+    """ "2/5 to 1/3". Raises ValueError otherwise."""
+    return _read_range(written, read_filling, 'expected a range of fillings such as "2/5 to 1/3"')
+
+
+@dataclass(frozen=True, slots=True)
+class TemperatureAsk:
+    """A temperature, an upper limit ("≤ 50 mK"), or base."""
+
+    kelvin: float | None
+    at_most: bool
+    text: str
+
+
+def read_temperature(written: object) -> TemperatureAsk:
+    """ "50 mK", "≤ 50 mK" (also "<= 50 mK") or "base". Raises ValueError otherwise."""
+    if isinstance(written, TemperatureAsk):
+        return written
+    if isinstance(written, str) and written.strip() == "base":
+        return TemperatureAsk(None, at_most=False, text="base")
+    at_most = isinstance(written, str) and written.lstrip().startswith(("≤", "<="))
+    bare = re.sub(r"^\s*(≤|<=)", "", written) if isinstance(written, str) else written
+    kelvin = parse_amount(bare, "K")
+    if kelvin <= 0:
+        raise ValueError("a temperature is above 0 K")
+    return TemperatureAsk(float(kelvin), at_most, str(written).strip())
+
+
+def read_filling_or_range(written: object) -> Amount | Range:
+    """One filling, or a range of them. Raises ValueError otherwise."""
+    if isinstance(written, Range) or (isinstance(written, str) and " to " in written):
+        return read_filling_range(written)
+    return read_filling(written)
+
+
+def _text(value: Any) -> str:
+    return str(value.text)
+
+
+def _range_type(read: Any, example: str) -> Any:
+    return (
+        PlainValidator(read),
+        PlainSerializer(_text),
+        WithJsonSchema({"type": "string", "examples": [example]}),
+    )
+
+
+FieldRange = Annotated[Range, *_range_type(read_field_range, "0 T to 12 T")]
+VoltRange = Annotated[Range, *_range_type(read_volt_range, "-0.5 V to 0.5 V")]
+FillingRange = Annotated[Range, *_range_type(read_filling_range, "2/5 to 1/3")]
+Temperature = Annotated[TemperatureAsk, *_range_type(read_temperature, "≤ 50 mK")]
+Filling = Annotated[
+    float,
+    PlainValidator(read_filling),
+    PlainSerializer(filling_name),
+    WithJsonSchema({"type": ["string", "number"], "examples": ["1/3", 2, 2.5]}),
+]
+FillingOrRange = Annotated[
+    float | Range,
+    PlainValidator(read_filling_or_range),
+    PlainSerializer(lambda value: value.text if isinstance(value, Range) else filling_name(value)),
+    WithJsonSchema({"type": ["string", "number"], "examples": ["1/3", 2, "2/5 to 1/3"]}),
+]

@@ -1,0 +1,26 @@
+"""Base of every table in a week or rig file.
+
+Attribute names end in their unit (``rated_field_T``); the key in the file does not (``rated_field``), since there the
+unit stands with the number.
+"""
+
+from __future__ import annotations
+
+import re
+
+from pydantic import BaseModel, ConfigDict
+
+_UNIT_SUFFIX = re.compile(
+    r"_(?:T_per_s|T_per_A|A_per_s|V_per_s|L_per_s_A|L_per_s|L_per_T|per_m2_V|per_m2|h_per_L|m3|percent|ohm|T|A|V|H|K|s|L)$"
+)
+
+
+def key_of(attribute: str) -> str:
+    """The key in a file for an attribute of a model."""
+    return _UNIT_SUFFIX.sub("", attribute).removesuffix("_")
+
+
+class Table(BaseModel):
+    """A TOML table: unknown keys are errors, values do not change after reading."""
+
+    model_config = ConfigDict(extra="forbid", frozen=True, alias_generator=key_of)

@@ -1,0 +1,243 @@
+"""Read week and rig files: every problem of both, in one go."""
+
+from __future__ import annotations
+
+import hashlib
+import tomllib
+from dataclasses import dataclass
+from pathlib import Path
+from typing import Any, Literal, TypeVar
+
+from pydantic import BaseModel, ValidationError
+from pydantic_core import ErrorDetails
+
+from planner.errors import InputError, Problem
+from planner.files.model import Table
+from planner.files.references import nearest, reference_problems
+from planner.files.rig import Rig
+from planner.files.targets import TARGET_KINDS
+from planner.files.versions import migrate
+from planner.files.week import Week
+from planner.plan import Source
+
+LARGEST_FILE = 2_000_000
+MOST_TARGETS = 2000
+
+_Model = TypeVar("_Model", bound=BaseModel)
+_Role = Literal["week", "rig"]
+
+
+@dataclass(frozen=True, slots=True)
+class Request:
+    """A week with its rig, and the files both came from."""
+
+    week: Week
+    rig: Rig
+    sources: tuple[Source, ...]
+
+
+def read_week(path: Path | str) -> Request:
+    """Read a week file and the rig file it names.
+
+    Raises
+    ------
+    InputError
+        With every problem found in either file.
+    """
+    path = Path(path)
+    text = _text_of(path)
+    data = _toml(text, path.name)
+    problems: list[Problem] = []
+    rig_path, rig_text, rig = None, "", None
+    try:
+        rig_path = _rig_path(data, path)
+        rig_text = _text_of(rig_path)
+        rig = parse_rig(rig_text, rig_path.name)
+    except InputError as error:
+        problems += error.problems
+    try:
+        week = parse_week(text, path.name)
+    except InputError as error:
+        raise InputError([*error.problems, *problems]) from None
+    if rig is None or rig_path is None:
+        raise InputError(problems)
+    problems = _fit_problems(week, rig, path.name)
+    if problems:
+        raise InputError(problems)
+    sources = (source("week", path.name, text), source("rig", week.rig, rig_text))
+    return Request(week, rig, sources)
+
+
+def read_rig(path: Path | str) -> tuple[Rig, Source]:
+    """Read a rig file; raises InputError as `read_week` does."""
+    path = Path(path)
+    text = _text_of(path)
+    return parse_rig(text, path.name), source("rig", path.name, text)
+
+
+def request_of(sources: tuple[Source, ...]) -> Request:
+    """The week and rig whose texts a plan carries; raises InputError if they cannot be read."""
+    texts = {item.role: item for item in sources}
+    week = parse_week(texts["week"].text, texts["week"].path)
+    return Request(week, parse_rig(texts["rig"].text, texts["rig"].path), sources)
+
+
+def source(role: _Role, path: str, text: str) -> Source:
+    """A file as a plan remembers it."""
+    return Source(role, path, hashlib.sha256(text.encode()).hexdigest(), text)
+
+
+def parse_week(text: str, file: str = "week") -> Week:
+    """A week from TOML text; raises InputError with every problem."""
+    data = migrate(_toml(text, file), "week", file)
+    targets = data.get("targets")
+    if isinstance(targets, list) and len(targets) > MOST_TARGETS:
+        raise InputError([Problem(file, "targets", f"{len(targets)} rows", f"a week holds {MOST_TARGETS} at most")])
+    week, problems = _validate(Week, data, file)
+    problems += reference_problems(data, file)
+    if problems or week is None:
+        raise InputError(problems)
+    return week
+
+
+def parse_rig(text: str, file: str = "rig") -> Rig:
+    """A rig from TOML text; raises InputError with every problem."""
+    data = migrate(_toml(text, file), "rig", file)
+    rig, problems = _validate(Rig, data, file)
+    if problems or rig is None:
+        raise InputError(problems)
+    return rig
+
+
+def _text_of(path: Path) -> str:
+    try:
+        size = path.stat().st_size
+        if not path.is_file():
+            raise InputError([Problem(path.name, "", "", "expected a file")])
+        if size > LARGEST_FILE:
+            raise InputError([Problem(path.name, "", f"{size} bytes", f"expected at most {LARGEST_FILE} bytes")])
+        text = path.read_text(encoding="utf-8")
+    except FileNotFoundError:
+        raise InputError([Problem(str(path), "", "", "there is no such file")]) from None
+    except UnicodeDecodeError:
+        raise InputError([Problem(path.name, "", "", "expected text in UTF-8")]) from None
+    except (OSError, ValueError) as error:
+        raise InputError([Problem(str(path)[:200], "", "", f"cannot be read: {error}")]) from None
+    return text
+
+
+def _toml(text: str, file: str) -> dict[str, Any]:
+    try:
+        data = tomllib.loads(text)
+    except (tomllib.TOMLDecodeError, RecursionError, ValueError) as error:
+        raise InputError([Problem(file, "", "", f"not valid TOML: {error}")]) from None
+    if not data:
+        raise InputError([Problem(file, "", "", "the file is empty")])
+    return data
+
+
+def _rig_path(data: dict[str, Any], week: Path) -> Path:
+    written = data.get("rig")
+    if not isinstance(written, str):
+        raise InputError([])  # the missing or mistyped key is reported by the model
+    folder = week.resolve().parent
+    expected = "expected the relative path of a rig file in the week's folder or below it"
+    try:
+        path = (folder / written).resolve()
+    except (OSError, ValueError, RuntimeError):
+        raise InputError([Problem(week.name, "rig", f'"{written[:80]!r}"', expected)]) from None
+    if Path(written).is_absolute() or not path.is_relative_to(folder):
+        raise InputError([Problem(week.name, "rig", f'"{written[:80]}"', expected)])
+    if not path.is_file():
+        others = sorted(str(other.relative_to(folder)) for other in folder.glob("*.toml") if other != week.resolve())
+        raise InputError(
+            [
+                Problem(
+                    week.name,
+                    "rig",
+                    f'"{written[:80]}"',
+                    "there is no such rig file",
+                    nearest(written, others),
+                )
+            ]
+        )
+    return path
+
+
+def _validate(model: type[_Model], data: dict[str, Any], file: str) -> tuple[_Model | None, list[Problem]]:
+    try:
+        return model.model_validate(data), []
+    except ValidationError as error:
+        return None, [_problem(file, model, detail) for detail in error.errors(include_url=False)]
+
+
+def _problem(file: str, model: type[BaseModel], detail: ErrorDetails) -> Problem:
+    place = [part for part in detail["loc"] if part not in TARGET_KINDS]
+    kind = detail["type"]
+    where = "".join(f"[{part}]" if isinstance(part, int) else f".{part}" for part in place).lstrip(".")
+    shown = "" if isinstance(detail["input"], (dict, list)) else _shown(detail["input"])
+    if kind == "missing":
+        return Problem(file, where, "", "is missing")
+    if kind == "extra_forbidden":
+        return Problem(file, where, "", "unknown key", nearest(str(place[-1]), _known_keys(model, detail["loc"])))
+    if kind in ("union_tag_invalid", "union_tag_not_found"):
+        written = detail["input"].get("kind") if isinstance(detail["input"], dict) else None
+        hint = nearest(str(written), list(TARGET_KINDS)) if written is not None else ", ".join(TARGET_KINDS)
+        return Problem(
+            file,
+            f"{where}.kind",
+            "" if written is None else _shown(written),
+            "expected a kind of target",
+            hint,
+        )
+    message = detail["msg"].removeprefix("Value error, ")
+    if kind == "literal_error":
+        message = f"expected {detail['ctx']['expected']}"
+    return Problem(file, where, shown, message)
+
+
+def _shown(value: Any) -> str:
+    text = f'"{value}"' if isinstance(value, str) else str(value)
+    return text if len(text) <= 60 else text[:57] + '…"'
+
+
+def _known_keys(model: type[BaseModel], loc: tuple[int | str, ...]) -> list[str]:
+    """Keys of the table in which the last part of ``loc`` stands."""
+    found: type[BaseModel] | None = model
+    for part in loc[:-1]:
+        if isinstance(part, int) or found is None:
+            continue
+        if part in TARGET_KINDS:
+            found = TARGET_KINDS[part]
+            continue
+        fields = {field.alias or name: field for name, field in found.model_fields.items()}
+        found = _table_in(fields[part].annotation) if part in fields else None
+    if found is None:
+        return []
+    return [field.alias or name for name, field in found.model_fields.items()]
+
+
+def _table_in(annotation: Any) -> type[Table] | None:
+    if isinstance(annotation, type) and issubclass(annotation, Table):
+        return annotation
+    inner = (_table_in(part) for part in getattr(annotation, "__args__", ()))
+    return next((table for table in inner if table is not None), None)
+
+
+def _fit_problems(week: Week, rig: Rig, file: str) -> list[Problem]:
+    """What the week must say for this rig to be planned at all."""
+    problems = []
+    if rig.bath is not None and week.present.level_percent is None:
+        problems.append(
+            Problem(file, "present.level", "", "is missing", "this rig has a helium bath: give the gauge reading")
+        )
+    if rig.bath is None and week.present.level_percent is not None:
+        problems.append(Problem(file, "present.level", "", "this rig has no helium bath", "leave it out"))
+    if rig.bath is not None and week.present.level_percent is not None:
+        low, high = rig.bath.calibration[0].level_percent, rig.bath.calibration[-1].level_percent
+        if not low <= week.present.level_percent <= high:
+            expected = f"outside the gauge's calibration, {low:g} % to {high:g} %"
+            problems.append(Problem(file, "present.level", f"{week.present.level_percent:g} %", expected))
+    if rig.magnet.switch is None and week.present.coil == "persistent":
+        problems.append(Problem(file, "present.coil", '"persistent"', "this rig has no persistent switch"))
+    return problems
