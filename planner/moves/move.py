@@ -1,0 +1,144 @@
+"""From one state to another: open the switch, change field, temperature and gates, close the switch."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+
+from planner.moves.field import driven, field_legs
+from planner.moves.helium import Lines
+from planner.moves.setup import Setup, whole_seconds
+from planner.moves.stretch import Stretch, delayed, end_of, held, stretch
+from planner.moves.switch import closing_legs, opening_legs, warming_leg
+from planner.moves.temperature import after_ramp_seconds, stage_seconds
+from planner.plan import Coil, CoilMode, Gates, Leg, State
+
+
+def move(setup: Setup, lines: Lines, before: State, after: State) -> tuple[Stretch, ...]:
+    """The stretches that lead from one state to another; none where nothing changes.
+
+    Raises
+    ------
+    ValueError
+        If the switch would have to be worked with the persistent current unknown.
+    """
+    switch = setup.rig.magnet.switch
+    keeps = _keeps_coil(before.coil, after.coil)
+    stretches = []
+    here = before
+    if before.coil.mode is CoilMode.PERSISTENT and not keeps and switch is not None:
+        legs = opening_legs(switch, before.coil)
+        opened = replace(before, coil=driven(setup.rig, before.coil.field_T[2]))
+        stretches.append(_switching(lines, "open switch", before, opened, legs, switch.attended))
+        here = opened
+    closes = after.coil.mode is CoilMode.PERSISTENT and not keeps and switch is not None
+    there = replace(after, coil=driven(setup.rig, after.coil.field_T[2])) if closes else after
+    changed = change(setup, lines, here, there)
+    if changed is not None:
+        stretches.append(changed)
+    if closes and switch is not None:
+        legs = closing_legs(setup.rig, switch, after.coil.field_T[2])
+        stretches.append(_switching(lines, "close switch", there, after, legs, switch.attended))
+    return tuple(stretches)
+
+
+def _keeps_coil(before: Coil, after: Coil) -> bool:
+    return before.field_T == after.field_T and before.mode == after.mode
+
+
+def _switching(lines: Lines, label: str, before: State, after: State, legs: tuple[Leg, ...], attended: bool) -> Stretch:
+    people, training = (1, "switch") if attended else (0, "")
+    return stretch(lines, label, before, after, legs, people=people, training=training, pace="switch and leads")
+
+
+def change(setup: Setup, lines: Lines, before: State, after: State) -> Stretch | None:
+    """Field, temperature and gates from one state to another with the switch as it is; None where nothing changes.
+
+    What the rig allows together starts together; the rest follows, one after the other.
+    """
+    rig = setup.rig
+    together = rig.policies.together
+    coil_legs, ramped = _coil_legs(setup, before.coil, after.coil)
+    channels = {
+        "field": coil_legs,
+        "temperature": _stage_legs(setup, before, after),
+        "gates": _gate_legs(setup, before.gates_V, after.gates_V),
+    }
+    at, last = 0, 0
+    placed: dict[str, tuple[Leg, ...]] = {}
+    for name in sorted(channels, key=lambda channel: channel not in together):
+        begins = 0 if name in together else last
+        placed[name] = delayed(channels[name], begins)
+        last = max(last, begins, end_of(placed[name]))
+        if name == "field" and coil_legs and ramped:
+            back = _settle_stage(setup, after, begins + ramped)
+            placed["stage"] = back
+            last = max(last, end_of(back))
+    at = last
+    if at == 0:
+        return None
+    lead_in = held((), before.coil, placed["field"][0].start_s, "field follows") if placed["field"] else ()
+    legs = held((*lead_in, *placed["field"]), after.coil, at, "held while the rest changes")
+    beside = (*placed["temperature"], *placed.get("stage", ()), *placed["gates"])
+    label = "ramp" if ramped else "change"
+    return stretch(lines, label, before, after, (*legs, *beside), pace=_pace((*legs, *beside), at))
+
+
+def _pace(legs: tuple[Leg, ...], end_s: int) -> str:
+    """What made it last so long: the longest leg on the channel that ends last, ramps before a settling included."""
+    last = [leg for leg in legs if leg.end_s == end_s and leg.action != "hold"]
+    if not last:
+        return ""
+    followed = [leg for leg in legs if leg.action == "ramp"] if last[0].action == "settle stage" else []
+    same = [
+        leg for leg in legs if leg.channel == last[0].channel and leg.action in (last[0].action, "ramp", "heater on")
+    ]
+    return max([*followed, *same], key=lambda leg: leg.seconds).reason
+
+
+def _coil_legs(setup: Setup, before: Coil, after: Coil) -> tuple[tuple[Leg, ...], int]:
+    """Legs of a field change, and the second at which the last ramp ends (0 without a ramp)."""
+    from_T, to_T = before.field_T[2], after.field_T[2]
+    if from_T == to_T:
+        return (), 0
+    rig = setup.rig
+    warm = warming_leg(rig) if before.mode is CoilMode.ZERO else None
+    lead_in = (warm,) if warm is not None else ()
+    legs = (*lead_in, *delayed(field_legs(rig, from_T, to_T), end_of(lead_in)))
+    ramped = end_of(legs)
+    settled = ramped + whole_seconds(rig.magnet.settle_s)
+    coil = driven(rig, to_T)
+    return (*legs, Leg("coil", "settle", ramped, settled, "magnet settles", coil=(coil, after))), ramped
+
+
+def _stage_legs(setup: Setup, before: State, after: State) -> tuple[Leg, ...]:
+    from_K, to_K = before.stage.temperature_K, after.stage.temperature_K
+    seconds = stage_seconds(setup.rig.stage, from_K, to_K)
+    if seconds == 0:
+        return ()
+    action = "warm" if to_K > from_K else "cool"
+    reason = "stage table" if setup.rig.stage.model is None else "stage model"
+    return (Leg("stage", action, 0, seconds, reason, stage_K=(from_K, to_K)),)
+
+
+def _settle_stage(setup: Setup, after: State, begins: int) -> tuple[Leg, ...]:
+    wanted_K = after.stage.temperature_K
+    seconds = after_ramp_seconds(setup.rig.stage, wanted_K)
+    if seconds == 0:
+        return ()
+    reason = "stage settles after the ramp"
+    return (Leg("stage", "settle stage", begins, begins + seconds, reason, stage_K=(wanted_K, wanted_K)),)
+
+
+def gate_seconds(setup: Setup, before: Gates, after: Gates) -> int:
+    """Seconds for all gates to go, each at its own rate, at the same time."""
+    start = dict(before)
+    return max(
+        (whole_seconds(abs(volt - start[name]) / setup.gate_rates_V_per_s[name]) for name, volt in after), default=0
+    )
+
+
+def _gate_legs(setup: Setup, before: Gates, after: Gates) -> tuple[Leg, ...]:
+    seconds = gate_seconds(setup, before, after)
+    if seconds == 0:
+        return ()
+    return (Leg("gates", "gate ramp", 0, seconds, "gate rate", gates_V=(before, after)),)
