@@ -15,7 +15,7 @@ from planner.errors import InputError, Problem
 from planner.files.model import Table
 from planner.files.references import nearest, reference_problems
 from planner.files.rig import Rig
-from planner.files.targets import TARGET_KINDS
+from planner.files.targets import TARGET_KINDS, FieldSweep, GateSweep, Map
 from planner.files.versions import migrate
 from planner.files.week import Week
 from planner.plan import Source
@@ -240,4 +240,19 @@ def _fit_problems(week: Week, rig: Rig, file: str) -> list[Problem]:
             problems.append(Problem(file, "present.level", f"{week.present.level_percent:g} %", expected))
     if rig.magnet.switch is None and week.present.coil == "persistent":
         problems.append(Problem(file, "present.coil", '"persistent"', "this rig has no persistent switch"))
+    return [*problems, *_pace_problems(week, file)]
+
+
+def _pace_problems(week: Week, file: str) -> list[Problem]:
+    """Targets whose duration nothing in the file sets."""
+    problems = []
+    for at, target in enumerate(week.targets):
+        if target.lockin is not None or week.sample(target.sample).lockin is not None:
+            continue
+        where = f"targets[{at}]"
+        if isinstance(target, (GateSweep, Map)) and target.dwell_s is None:
+            problems.append(Problem(file, f"{where}.dwell", "", "is missing", "give a dwell a point, or a lock-in"))
+        if isinstance(target, FieldSweep) and target.feature_T is not None and target.rate_T_per_s is None:
+            hint = "a feature sets the rate only together with the lock-in's time constant"
+            problems.append(Problem(file, f"{where}.lockin", "", "is missing", hint))
     return problems

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from itertools import pairwise
 
 from planner.files import Rig
@@ -114,6 +114,16 @@ def _reverse(rig: Rig, legs: list[Leg], at: int) -> int:
         coil = driven(rig, 0.0)
         legs.append(Leg("coil", "reverse", at, at + seconds, "supply reversal", coil=(coil, coil)))
     return at + seconds
+
+
+def joined(legs: tuple[Leg, ...], before: Coil, after: Coil) -> tuple[Leg, ...]:
+    """The same legs with the coil at both ends as stated: at zero field the modes zero and driven meet."""
+    if not legs:
+        return legs
+    first = replace(legs[0], coil=(before, legs[0].coil[1])) if legs[0].coil else legs[0]
+    legs = (first, *legs[1:])
+    last = replace(legs[-1], coil=(legs[-1].coil[0], after)) if legs[-1].coil else legs[-1]
+    return (*legs[:-1], last)
 
 
 def driven(rig: Rig, field_T: float) -> Coil:

@@ -26,7 +26,7 @@ def leg_litres(rig: Rig, leg: Leg) -> float:
         return 0.0
     losses = rig.bath.losses
     before, after = leg.coil
-    heater_on = leg.action == "heater on" or (before.mode is CoilMode.DRIVEN and leg.action != "heater off")
+    heater_on = CoilMode.DRIVEN in (before.mode, after.mode) and leg.action != "heater off"
     amperes = (magnitude(before.lead_current_A) + magnitude(after.lead_current_A)) / 2
     per_s = losses.static_L_per_s + losses.leads_L_per_s_A * amperes
     per_s += losses.switch_open_L_per_s if heater_on else 0.0

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import replace
 
-from planner.moves.field import driven, field_legs
+from planner.moves.field import driven, field_legs, joined
 from planner.moves.helium import Lines
 from planner.moves.setup import Setup, whole_seconds
 from planner.moves.stretch import Stretch, delayed, end_of, held, stretch
@@ -103,11 +103,10 @@ def _coil_legs(setup: Setup, before: Coil, after: Coil) -> tuple[tuple[Leg, ...]
     rig = setup.rig
     warm = warming_leg(rig) if before.mode is CoilMode.ZERO else None
     lead_in = (warm,) if warm is not None else ()
-    legs = (*lead_in, *delayed(field_legs(rig, from_T, to_T), end_of(lead_in)))
+    legs = joined((*lead_in, *delayed(field_legs(rig, from_T, to_T), end_of(lead_in))), before, after)
     ramped = end_of(legs)
     settled = ramped + whole_seconds(rig.magnet.settle_s)
-    coil = driven(rig, to_T)
-    return (*legs, Leg("coil", "settle", ramped, settled, "magnet settles", coil=(coil, after))), ramped
+    return (*legs, Leg("coil", "settle", ramped, settled, "magnet settles", coil=(after, after))), ramped
 
 
 def _stage_legs(setup: Setup, before: State, after: State) -> tuple[Leg, ...]:

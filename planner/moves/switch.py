@@ -50,9 +50,9 @@ def opening_legs(switch: Switch, coil: Coil) -> tuple[Leg, ...]:
 
 
 def warming_leg(rig: Rig) -> Leg | None:
-    """The switch opens at zero field and zero current, before a ramp; None where the rig has no switch."""
+    """The switch opens at zero field and zero current, before a ramp; None where there is none or it takes no time."""
     switch = rig.magnet.switch
-    if switch is None:
+    if switch is None or whole_seconds(switch.warm_s) == 0:
         return None
     seconds = whole_seconds(switch.warm_s)
     return Leg("coil", "heater on", 0, seconds, "switch warms", coil=(Coil(), Coil(ZERO, CoilMode.DRIVEN, ZERO)))

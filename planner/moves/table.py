@@ -176,8 +176,7 @@ def _changes(
     zeros = np.zeros(moved.shape)
     lead_in_L = np.where(moved, before_rate * lead_in, 0.0)
     warm_L = _coil_litres(setup, warm_s, zeros, zeros)
-    at_T = np.broadcast_to(np.abs(places.field_T)[None, :], moved.shape)
-    settle_L = np.where(moved, _coil_litres(setup, np.full(moved.shape, settle), at_T, zeros), 0.0)
+    settle_L = np.where(moved, after_rate * settle, 0.0)
     held_s = total - np.where(moved, lead_in + field_s, 0)
     ramp_L = np.where(moved, ramps.litres[pick], 0.0)
     litres = lead_in_L + warm_L + ramp_L + settle_L + after_rate * held_s
