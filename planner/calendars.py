@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from datetime import time, timedelta
+from itertools import combinations
 
 from planner.clock import Clock
 
@@ -23,29 +24,35 @@ def tidy(intervals: Iterable[Interval]) -> Calendar:
 
 
 def both(first: Calendar, second: Calendar) -> Calendar:
-    """Seconds that lie in both calendars."""
-    return tidy((max(a, c), min(b, d)) for a, b in first for c, d in second)
+    """Seconds that lie in both calendars; intervals that touch in either stay apart."""
+    return tuple(sorted((max(a, c), min(b, d)) for a, b in first for c, d in second if max(a, c) < min(b, d)))
 
 
 def without(first: Calendar, second: Calendar) -> Calendar:
-    """Seconds of ``first`` that are not in ``second``."""
+    """Seconds of ``first`` that are not in ``second``; intervals of ``first`` that touch stay apart."""
     left = list(first)
     for begin, finish in second:
-        left = [part for a, b in left for part in ((a, min(b, begin)), (max(a, finish), b)) if part[0] < part[1]]
-    return tidy(left)
+        pieces = (part for a, b in left for part in ((a, min(b, begin)), (max(a, finish), b)))
+        left = [part for part in pieces if part[0] < part[1]]
+    return tuple(sorted(left))
 
 
-def at_least(calendars: list[Calendar], count: int) -> Calendar:
-    """Seconds covered by at least ``count`` of the calendars (``count`` ≥ 1)."""
-    edges = sorted([(begin, 1) for c in calendars for begin, _ in c] + [(end, -1) for c in calendars for _, end in c])
-    covered: list[Interval] = []
-    depth, since = 0, 0
-    for at, change in edges:
-        if depth >= count and at > since:
-            covered.append((since, at))
-        depth += change
-        since = at
-    return tidy(covered)
+def same_all_through(calendars: list[Calendar], count: int) -> Calendar:
+    """Stretches in which the same ``count`` calendars are open from begin to finish.
+
+    Where stretches of different groups overlap, the longer one keeps the overlap: the intervals are disjoint, and
+    touching ones stay apart, since nothing may run from one group's stretch into another's.
+    """
+    found: list[Interval] = []
+    for group in combinations(calendars, count):
+        shared = group[0]
+        for other in group[1:]:
+            shared = both(shared, other)
+        found += shared
+    kept: list[Interval] = []
+    for interval in sorted(set(found), key=lambda each: (each[0] - each[1], each)):
+        kept += without((interval,), tuple(kept))
+    return tuple(sorted(kept))
 
 
 def weekly(clock: Clock, horizon_s: int, days: frozenset[int], opens: time, closes: time) -> Calendar:

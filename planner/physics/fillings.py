@@ -144,13 +144,9 @@ def field_interval_T(
     OutOfRangeError
         Additionally if the interval of density reaches zero, where no field interval exists.
     """
-    half = float(within("density_sigma_per_m2", density_sigma_per_m2, 0.0)) * float(
-        within("sigmas", sigmas, 0.0)
-    )
+    half = float(within("density_sigma_per_m2", density_sigma_per_m2, 0.0)) * float(within("sigmas", sigmas, 0.0))
     if half >= abs(density_per_m2):
-        raise OutOfRangeError(
-            f"density_per_m2 = {density_per_m2:g} ± {half:g} includes zero: no field interval exists"
-        )
+        raise OutOfRangeError(f"density_per_m2 = {density_per_m2:g} ± {half:g} includes zero: no field interval exists")
     ends = (
         np.asarray(field_for_filling_T(density_per_m2 - half, filling)),
         np.asarray(field_for_filling_T(density_per_m2 + half, filling)),
@@ -240,14 +236,13 @@ def jain_fractions(largest_p: int) -> tuple[Fraction, ...]:
 def fillings_to_list(largest_integer: int = 12) -> tuple[Fraction, ...]:
     """Return the fillings worth a line in a table for a GaAs-like layer, in rising order.
 
-    The sequence p/(2p ± 1) to 5/11 and 5/9 with mates, 4/3, 7/5, 8/5, 5/3, 7/3, 5/2, 8/3 and the integers up
+    The sequence p/(2p ± 1) to 5/11 with its mirror, 4/3, 7/5, 8/5, 5/3, 7/3, 5/2, 8/3 and the integers up
     to ``largest_integer``. Raises `OutOfRangeError` for ``largest_integer`` below 1. Which fractions a
     sample shows depends on its mobility and temperature; the selection is common practice.
     """
     within("largest_integer", largest_integer, 1)
-    jain = [f for f in jain_fractions(5) if f != Fraction(6, 11)]
     above_one = [Fraction(*pair) for pair in ((4, 3), (7, 5), (8, 5), (5, 3), (7, 3), (5, 2), (8, 3))]
-    return tuple(sorted({*jain, *above_one, *(Fraction(i) for i in range(1, largest_integer + 1))}))
+    return tuple(sorted({*jain_fractions(5), *above_one, *(Fraction(i) for i in range(1, largest_integer + 1))}))
 
 
 def graphene_fillings(levels: int) -> tuple[int, ...]:

@@ -58,7 +58,8 @@ _SATURATED = np.array(
         (2.2, 145.99, 22745), (2.3, 145.76, 22865), (2.4, 145.38, 23000), (2.6, 144.29, 23251),
         (2.8, 142.88, 23431), (3.0, 141.20, 23506), (3.2, 139.27, 23460), (3.4, 137.09, 23274),
         (3.6, 134.64, 22933), (3.7, 133.30, 22696), (3.8, 131.88, 22412), (3.9, 130.36, 22076),
-        (4.0, 128.74, 21683), (4.1, 127.00, 21227), (4.2, 125.14, 20701), (4.3, 123.11, 20095),
+        (4.0, 128.74, 21683), (4.1, 127.00, 21227), (4.2, 125.14, 20701),
+        (BOILING_K, BOILING_DENSITY_kg_per_m3, BOILING_LATENT_J_per_kg), (4.3, 123.11, 20095),
         (4.4, 120.91, 19398), (4.5, 118.49, 18594), (4.6, 115.80, 17660),
     ]
 )  # fmt: skip
@@ -133,8 +134,6 @@ def boil_off_L_per_h(heat_W: ArrayLike, temperature_K: ArrayLike = BOILING_K) ->
     """
     heat = not_negative("heat_W", heat_W)
     volumetric = latent_heat_J_per_kg(temperature_K) * np.asarray(liquid_density_kg_per_m3(temperature_K))
-    if np.ndim(temperature_K) == 0 and float(np.asarray(temperature_K)) == BOILING_K:
-        volumetric = np.asarray(BOILING_LATENT_J_PER_L / litre)
     return as_values(heat / volumetric / litre * hour)
 
 
@@ -214,7 +213,7 @@ def gas_enthalpy_J_per_kg(temperature_K: ArrayLike) -> Values:
     """Return the enthalpy of helium gas at 1 atm above the saturated vapour at 4.22 K, to 400 K.
 
     The heat that gas leaving at ``temperature_K`` has taken up after evaporating: 75 times the latent heat
-    at 300 K. Raises `OutOfRangeError` outside 4.2221 to 400 K. Equation of state, 0.1 %.
+    at 300 K. Raises `OutOfRangeError` outside 4.2221 to 400 K. Equation of state, to 35 J/kg.
     """
     temperature = within("temperature_K", temperature_K, BOILING_K, 400.0)
     departure = np.interp(temperature, _GAS_DEPARTURE[:, 0], _GAS_DEPARTURE[:, 1])

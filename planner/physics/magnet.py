@@ -64,9 +64,7 @@ def charging_voltage_V(
     return as_values(inductive_V + finite("current_A", current_A) * not_negative("R", lead_resistance_ohm))
 
 
-def ramp_time_s(
-    from_T: ArrayLike, to_T: ArrayLike, upper_edges_T: ArrayLike, rates_T_per_s: ArrayLike
-) -> Values:
+def ramp_time_s(from_T: ArrayLike, to_T: ArrayLike, upper_edges_T: ArrayLike, rates_T_per_s: ArrayLike) -> Values:
     """Return the time of a ramp through a rate table by magnitude of field.
 
     Parameters
@@ -151,9 +149,7 @@ def voltage_limited_time_s(
     down_V = float(within("lowest_V", lowest_V, high=0.0))
     start, end = float(finite("from_A", from_A)), float(finite("to_A", to_A))
     if start * end < 0.0:
-        return _one_way_s(abs(start), 0.0, inductance, ohm, down_V) + _one_way_s(
-            0.0, abs(end), inductance, ohm, up_V
-        )
+        return _one_way_s(abs(start), 0.0, inductance, ohm, down_V) + _one_way_s(0.0, abs(end), inductance, ohm, up_V)
     supply_V = up_V if abs(end) > abs(start) else down_V
     return _one_way_s(abs(start), abs(end), inductance, ohm, supply_V)
 
@@ -163,9 +159,7 @@ def _one_way_s(start: float, end: float, inductance: float, ohm: float, supply_V
         return 0.0
     first, last = supply_V - start * ohm, supply_V - end * ohm
     if first * last <= 0.0 or (last > 0.0) != (end > start):
-        raise OutOfRangeError(
-            f"{supply_V:g} V across {ohm:g} Ω cannot take the current from {start:g} A to {end:g} A"
-        )
+        raise OutOfRangeError(f"{supply_V:g} V across {ohm:g} Ω cannot take the current from {start:g} A to {end:g} A")
     drop = (start - end) * ohm / first
     # log1p(x)/x stays accurate for leads of almost no resistance, where x goes to zero.
     logarithm = np.log1p(drop) / drop if drop != 0.0 else 1.0

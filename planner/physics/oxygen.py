@@ -65,9 +65,7 @@ def gas_to_displace_m3(room_m3: ArrayLike, oxygen: ArrayLike = HAZARD_OXYGEN) ->
 
     Raises `OutOfRangeError` unless 0 ≤ oxygen ≤ 0.21 and the room is positive.
     """
-    return as_values(
-        positive("room_m3", room_m3) * (1.0 - within("oxygen", oxygen, 0.0, AIR_OXYGEN) / AIR_OXYGEN)
-    )
+    return as_values(positive("room_m3", room_m3) * (1.0 - within("oxygen", oxygen, 0.0, AIR_OXYGEN) / AIR_OXYGEN))
 
 
 def gas_to_mix_m3(room_m3: ArrayLike, oxygen: ArrayLike = HAZARD_OXYGEN) -> Values:

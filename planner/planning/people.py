@@ -4,10 +4,11 @@ from __future__ import annotations
 
 from functools import cached_property
 
-from planner.calendars import Calendar, at_least, both, tidy, weekly, without
+from planner.calendars import Calendar, both, same_all_through, tidy, weekly, without
 from planner.files import Week
 from planner.files.hours import Hours, Span
 from planner.files.targets import Target
+from planner.files.week import Person
 from planner.moves import Needs
 
 
@@ -39,7 +40,7 @@ class Availability:
         return self.hours(self._week.staffed)
 
     def attended(self, people: int, training: str = "") -> Calendar:
-        """When at least so many people with that training ("" means any) are there, in staffed hours.
+        """When so many people with that training ("" means any) are there all through, in staffed hours.
 
         A week without a roster counts its staffed hours as having whoever is needed.
         """
@@ -48,11 +49,20 @@ class Availability:
         if not self._week.people:
             return self.staffed
         trained = [person for person in self._week.people if not training or training in person.trained]
-        there = [
-            without(self.hours(person.hours) if person.hours else self.staffed, self.spans(person.away))
-            for person in trained
+        return both(self.staffed, same_all_through([self.there(person) for person in trained], people))
+
+    def there(self, person: Person) -> Calendar:
+        """When somebody on the roster is there: their own hours, or the staffed ones, less their absences."""
+        return without(self.hours(person.hours) if person.hours else self.staffed, self.spans(person.away))
+
+    def present(self, training: str, begin_s: int, finish_s: int) -> list[str]:
+        """Names on the roster with that training who are there from ``begin_s`` to ``finish_s``."""
+        return [
+            person.name
+            for person in self._week.people
+            if (not training or training in person.trained)
+            and any(begin <= begin_s and finish_s <= finish for begin, finish in self.there(person))
         ]
-        return both(self.staffed, at_least(there, people))
 
     @cached_property
     def no_ramps(self) -> Calendar:
