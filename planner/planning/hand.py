@@ -1,0 +1,78 @@
+"""The two orders people use by hand, put through the same moves and services on the same takes."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from planner.optimise.problem import Problem
+from planner.optimise.result import Evaluation, Result, TraceStep
+from planner.plan import HandOrder
+from planner.planning.compile import HELIUM, Compiled
+
+
+def hand_orders(compiled: Compiled, result: Result) -> tuple[HandOrder, ...]:
+    """How the plan compares with "as listed" and "sorted by field".
+
+    A hand order that cannot fit everything is compared with this plan's own order restricted to what it does fit.
+    """
+    from planner.optimise import follow
+
+    problem = compiled.problem
+    mine = _takes(problem, result.order)
+    if not mine:
+        return ()
+    listed = sorted(mine)
+    by_field = sorted(mine, key=lambda take: (_field_T(compiled, take), take))
+    found = []
+    for name, wanted in (("as listed", listed), ("sorted by field", by_field)):
+        theirs = follow(problem, wanted, only=set(mine))
+        if theirs.objective is None:
+            continue
+        shared = set(_takes(problem, theirs.order))
+        ours: Result | Evaluation = result
+        if shared != set(mine):
+            ours = follow(problem, [take for take in mine if take in shared], only=shared)
+        if ours.objective is None or set(_takes(problem, ours.order)) != shared:
+            continue
+        moving_s, litres = _spent(compiled, theirs.trace)
+        our_moving_s, our_litres = _spent(compiled, ours.trace)
+        points = sum(int(problem.prize[take]) for take in shared)
+        found.append(
+            HandOrder(
+                name=name,
+                takes=len(shared),
+                points=points,
+                moving_s=moving_s,
+                litres=litres,
+                plan_takes=len(shared),
+                plan_points=points,
+                plan_moving_s=our_moving_s,
+                plan_litres=our_litres,
+            )
+        )
+    return tuple(found)
+
+
+def _takes(problem: Problem, order: Sequence[int]) -> list[int]:
+    return [take for node in order for take in problem.covers[node]]
+
+
+def _field_T(compiled: Compiled, take: int) -> float:
+    if take >= len(compiled.takes):
+        return 0.0
+    return abs(compiled.takes[take].alternatives[0].entry.coil.field_T[2])
+
+
+def _spent(compiled: Compiled, trace: Sequence[TraceStep]) -> tuple[int, float]:
+    """Moving seconds and litres of an order: bath losses and what transfers lose on the way."""
+    problem = compiled.problem
+    moving_s = sum(block.seconds for step in trace for block in step.blocks if block.arc or problem.moving[step.node])
+    if not len(problem.reservoirs.level):
+        return moving_s, 0.0
+    services = problem.services
+    parts = [part for step in trace for part in (*step.blocks, *step.waits)]
+    begin = float(problem.reservoirs.level[HELIUM])
+    end = float(max(parts, key=lambda part: (part.start + part.seconds, part.start)).after[HELIUM]) if parts else begin
+    fills = [(step.node, step.poured) for step in trace if step.poured > 0]
+    drawn = sum(float(services.source_fixed[node] + services.source_per_unit[node] * poured) for node, poured in fills)
+    return moving_s, begin - end + drawn

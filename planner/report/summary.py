@@ -1,0 +1,207 @@
+"""The summary of a plan for the terminal: what is done when, totals, what was left out, findings, hand orders."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterable
+from dataclasses import dataclass, replace
+from itertools import groupby
+
+from rich.console import Console
+from rich.table import Table
+from rich.text import Text
+
+from planner.clock import WEEKDAYS, Clock
+from planner.errors import InputError
+from planner.files import Rig, request_of
+from planner.files.level import level_at
+from planner.plan import HandOrder, LeftOut, Plan, Score, Step, StepKind
+from planner.report.findings import findings_table
+from planner.report.wording import hours, kelvin, plain, rounded, tesla
+
+CAUTION = (
+    "A planning aid: it protects neither magnet nor people. The maker's limits, the rig's interlocks, local codes and "
+    "licensed people come first."
+)
+
+
+def summary(plan: Plan, console: Console) -> None:
+    """Print the summary of a plan."""
+    rig = _rig(plan)
+    heading = plain(plan.title, "bold")
+    heading.append(" · ").append_text(plain(plan.rig, "not bold"))
+    console.print(heading)
+    if plan.recovery:
+        console.print(Text("RECOVERY PLAN: runs down, calls people, transfers helium.", "bold"))
+    _days(plan, rig, console)
+    console.print()
+    _totals(plan, console)
+    _left_out(plan.left_out, console)
+    _section("Findings", console)
+    findings_table(plan.findings, plan.clock, console)
+    _compared(plan.compared, console)
+    console.print()
+    console.print(Text(CAUTION, "italic"))
+
+
+def _rig(plan: Plan) -> Rig | None:
+    """The rig, for gauge levels; None where the plan carries no readable files (levels are then in litres)."""
+    try:
+        return request_of(plan.sources).rig
+    except (InputError, KeyError):
+        return None
+
+
+def _section(name: str, console: Console) -> None:
+    console.print()
+    console.print(Text(name, "bold underline"))
+
+
+@dataclass(frozen=True, slots=True)
+class Stretch:
+    """Takes of one target in a row, or one service: a line of the summary."""
+
+    steps: tuple[Step, ...]
+
+    @property
+    def label(self) -> str:
+        """The target's name and how many takes, or the step's own label."""
+        first = self.steps[0]
+        return f"{first.target} ({len(self.steps)} takes)" if len(self.steps) > 1 else first.label
+
+
+def stretches(steps: Iterable[Step], clock: Clock) -> list[Stretch]:
+    """Takes and services in time order; neighbouring takes of one target on one day are one stretch."""
+    found: list[Stretch] = []
+    for step in steps:
+        if step.kind not in (StepKind.TAKE, StepKind.SERVICE):
+            continue
+        last = found[-1].steps[-1] if found else None
+        same = (
+            last is not None
+            and last.kind == step.kind == StepKind.TAKE
+            and bool(step.target)
+            and (last.target, last.user, last.attended) == (step.target, step.user, step.attended)
+            and clock.moment(last.start_s).date() == clock.moment(step.start_s).date()
+        )
+        if same:
+            found[-1] = replace(found[-1], steps=(*found[-1].steps, step))
+        else:
+            found.append(Stretch((step,)))
+    return found
+
+
+def _days(plan: Plan, rig: Rig | None, console: Console) -> None:
+    clock = plan.clock
+    table = Table(box=None, padding=(0, 2, 0, 0), show_edge=False, header_style="bold")
+    table.add_column("time", no_wrap=True)
+    table.add_column("what", overflow="fold", ratio=3)
+    table.add_column("user", overflow="fold", ratio=1)
+    table.add_column("field / T", justify="right", no_wrap=True)
+    table.add_column("stage", justify="right", overflow="fold")
+    table.add_column("helium", justify="right", no_wrap=True)
+    grouped = groupby(stretches(plan.steps, clock), key=lambda stretch: clock.moment(stretch.steps[0].start_s).date())
+    for day, found in grouped:
+        table.add_row(Text(f"{WEEKDAYS[day.weekday()]} {day.day}", "bold"))
+        for stretch in found:
+            table.add_row(*_cells(stretch, clock, rig))
+    if table.row_count:
+        console.print(table)
+    else:
+        console.print(Text("No takes and no services."))
+
+
+def _cells(stretch: Stretch, clock: Clock, rig: Rig | None) -> list[Text]:
+    first, last = stretch.steps[0], stretch.steps[-1]
+    begin, end = clock.moment(first.start_s), clock.moment(last.end_s)
+    times = f"{begin:%H:%M}–{end:%H:%M}" + ("+" if end.date() != begin.date() else "")
+    what = plain(stretch.label)
+    if first.attended:
+        what.append(" (attended)")
+    fields = [b.coil.field_T[2] for step in stretch.steps for b in (step.before, step.after)]
+    fields += [leg.coil[1].field_T[2] for step in stretch.steps for leg in step.legs if leg.coil is not None]
+    kelvins = [step.after.stage.temperature_K for step in stretch.steps]
+    return [
+        Text(times),
+        what,
+        plain(first.user),
+        Text(_range(min(fields), max(fields), tesla)),
+        Text(_range(min(kelvins), max(kelvins), kelvin)),
+        Text(_helium(last, rig)),
+    ]
+
+
+def _range(low: float, high: float, write: Callable[[float], str]) -> str:
+    first, last = write(low), write(high)
+    if first == last:
+        return first
+    number, _, unit = first.partition(" ")
+    return f"{number if last.endswith(unit) else first} … {last}"
+
+
+def _helium(step: Step, rig: Rig | None) -> str:
+    if step.helium_after_L is None:
+        return ""
+    if rig is None or rig.bath is None:
+        return f"{step.helium_after_L:.0f} L"
+    return f"{level_at(rig.bath, step.helium_after_L):.0f} %"
+
+
+def _totals(plan: Plan, console: Console) -> None:
+    score = plan.score
+    wet = any(step.helium_after_L is not None for step in plan.steps)
+    takes = sum(step.kind == StepKind.TAKE and bool(step.target) for step in plan.steps)
+    transfers = sum(step.poured_L > 0 for step in plan.steps)
+    poured_L = sum(step.poured_L for step in plan.steps)
+    console.print(
+        Text(
+            f"{takes} takes, {score.points} of at most {score.points_bound} points; moving {hours(score.moving_s)}"
+            + (f", helium {rounded(score.litres)} L" if wet else "")
+            + (f"; {transfers} transfers pour {rounded(poured_L)} L" if transfers else "")
+            + "."
+        )
+    )
+    console.print(Text(bound_words(score)))
+
+
+def bound_words(score: Score) -> str:
+    """Cost, proven bound and gap in words."""
+    cost = f"Cost {score.cost_h:.2f} h (moving hours + {rounded(score.hours_per_litre)} h a litre)"
+    if score.proven:
+        return f"{cost}: proven best."
+    bound = f"none that does this work costs less than {score.cost_bound_h:.2f} h"
+    return f"{cost}; {bound}: gap {100 * score.gap:.1f} %, not proven best."
+
+
+def _left_out(left_out: tuple[LeftOut, ...], console: Console) -> None:
+    _section("Left out, and why", console)
+    if not left_out:
+        console.print(Text("Nothing."))
+        return
+    table = Table(box=None, padding=(0, 2, 0, 0), show_edge=False, header_style="bold")
+    table.add_column("target or take", overflow="fold")
+    table.add_column("user", overflow="fold")
+    table.add_column("priority", justify="right")
+    table.add_column("why", overflow="fold")
+    for item in left_out:
+        table.add_row(plain(item.take or item.target), plain(item.user), str(item.priority), plain(item.reason))
+    console.print(table)
+
+
+def _compared(orders: tuple[HandOrder, ...], console: Console) -> None:
+    if not orders:
+        return
+    _section("Against orders made by hand, on the same takes", console)
+    table = Table(box=None, padding=(0, 2, 0, 0), show_edge=False, header_style="bold")
+    table.add_column("order", overflow="fold")
+    for name in ("takes", "by hand", "this plan", "saved"):
+        table.add_column(name, justify="right")
+    for order in orders:
+        saved_L = order.litres - order.plan_litres
+        table.add_row(
+            plain(order.name),
+            f"{order.takes}",
+            f"{hours(order.moving_s)}, {order.litres:.1f} L",
+            f"{hours(order.plan_moving_s)}, {order.plan_litres:.1f} L",
+            f"{hours(order.moving_s - order.plan_moving_s)}, {saved_L:.1f} L".replace("-", "−"),
+        )
+    console.print(table)

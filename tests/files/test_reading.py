@@ -1,0 +1,379 @@
+"""Reading: every problem in one go, each with file, place, value, what was expected, and a hint."""
+
+from __future__ import annotations
+
+import hashlib
+from pathlib import Path
+from typing import Any
+
+import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
+
+from planner.errors import InputError, Problem
+from planner.files import parse_rig, parse_week, read_rig, read_week, request_of
+from planner.files.reading import LARGEST_FILE, MOST_TARGETS
+from tests.builders import DRY, REMOVED, Changes, rig_text, week_text
+
+HOLD: Changes = {"name": "T1", "kind": "hold", "field": "1 T", "duration": "1 h"}
+EXAMPLES = Path(__file__).parents[2] / "example_plans"
+
+
+def problems_in_week(changes: Changes | None = None, targets: list[Changes] | None = None) -> list[Problem]:
+    with pytest.raises(InputError) as caught:
+        parse_week(week_text(changes, targets), "w.toml")
+    return caught.value.problems
+
+
+def problems_in_rig(changes: Changes) -> list[Problem]:
+    with pytest.raises(InputError) as caught:
+        parse_rig(rig_text(changes), "r.toml")
+    return caught.value.problems
+
+
+def written(folder: Path, week: str, rig: str | None = None) -> Path:
+    (folder / "week.toml").write_text(week, encoding="utf-8")
+    if rig is not None:
+        (folder / "round.rig.toml").write_text(rig, encoding="utf-8")
+    return folder / "week.toml"
+
+
+def test_every_problem_shows_at_once() -> None:
+    found = problems_in_week(
+        {"zone": "Europe/Vienn", "present.level": 90, "helium": {"stock": "100 K"}, "staffd": []},
+        [
+            {**HOLD, "priority": 7, "sample": "S2", "durration": "1 h"},
+            {**HOLD, "kind": "holt"},
+        ],
+    )
+    assert {str(problem) for problem in found} == {
+        'w.toml: zone is "Europe/Vienn": expected an IANA time zone such as "Europe/Vienna"',
+        'w.toml: present.level is 90: expected a quantity such as "85 %": a bare number has no unit; '
+        'write it as text, for example "90 %"',
+        'w.toml: helium.stock is "100 K": expected a quantity such as "60 L": "K" is not a unit of this kind',
+        'w.toml: staffd: unknown key (did you mean "staffed"?)',
+        "w.toml: targets[0].priority is 7: expected at most 5",
+        'w.toml: targets[0].durration: unknown key (did you mean "duration"?)',
+        'w.toml: targets[0].sample is "S2": expected a sample of this file (did you mean "S1"?)',
+        'w.toml: targets[1].kind is "holt": expected a kind of target (did you mean "hold"?)',
+        'w.toml: targets[1].name is "T1": this name is taken already',
+    }
+    priority = next(problem for problem in found if "priority" in problem.where)
+    assert (priority.file, priority.where, priority.value) == ("w.toml", "targets[0].priority", "7")
+
+
+def test_both_files_speak_at_once(tmp_path: Path) -> None:
+    path = written(tmp_path, week_text({"title": REMOVED}), rig_text({"magnet.rated_field": "10"}))
+    with pytest.raises(InputError) as caught:
+        read_week(path)
+    assert {(problem.file, problem.where) for problem in caught.value.problems} == {
+        ("week.toml", "title"),
+        ("round.rig.toml", "magnet.rated_field"),
+    }
+
+
+@pytest.mark.parametrize(
+    ("place", "value", "says"),
+    [
+        ("start", "Monday", 'start is "Monday": expected a date and time such as 2031-03-03T08:30:00'),
+        ("start", 5, "start is 5: expected a date and time"),
+        ("start", "2031-03-30T02:30", "does not exist in Europe/Vienna"),
+        ("end", "2031-03-03T07:00", "must be after the start, 2031-03-03 08:00:00"),
+        ("end", "2031-09-03T07:00", "ten weeks at most"),
+        ("end", "9999-12-31T23:00", "year from 1970 to 2199"),
+        ("present.temperature", "warm", 'present.temperature is "warm": expected a quantity such as "42 mK"; or the word'),
+        ("present.persistent_current", "5 T", '"T" is not a unit of this kind; or the word "unknown"'),
+        ("present.coil", "on", "expected 'zero', 'driven' or 'persistent'"),
+        ("users.0.letter", "a", 'users[0].letter is "a": expected one capital letter'),
+        ("users.0.name", "", "expected at least 1 characters"),
+        ("users", [], "users: expected at least 1 of them"),
+        ("users.0.name", "two\nlines", "text of one line, without control characters"),
+        ("users.0.only_in_slots", "perhaps", "expected true or false"),
+        ("samples.0.name", ["S1"], "samples[0].name: expected text in quotes"),
+        ("samples.0.gates.0.rest", "2 V", "samples[0].gates[0]: expected lowest ≤ rest ≤ highest"),
+        ("samples.0.gates.1.name", "top", 'samples[0].gates is "top": this name is taken already'),
+        ("samples.0.lockin", 3, "samples[0].lockin is 3: expected a table, in { }"),
+        ("samples.0.lockin", {"time_constant": "1 s", "poles": 1.5}, "lockin.poles is 1.5: expected a whole number"),
+        ("samples.0.density_error", "60 %", "must be at most 50 percent"),
+        ("staffed", 3, "staffed is 3: expected a list, in [ ]"),
+        ("staffed.0.days", "Mo-Fr", 'expected weekdays such as "Mon-Fri", "Mon, Wed" or "daily"'),
+        ("staffed.0.from", 8, 'staffed[0].from is 8: expected a time of day such as "08:30"'),
+        ("helium", {"deliveries": [{"at": 5, "volume": "60 L"}]}, "helium.deliveries[0].at is 5: expected a date"),
+        ("helium", {"deliveries": [{"at": "Tuesday", "volume": "60 L"}]}, "helium.deliveries[0].at is Tuesday: expected"),
+        ("quiet", [{"name": "q", "from": "Wed 06:00", "to": "Tue 20:00"}], "quiet[0] is Wed 06:00 to Tue 20:00: must end"),
+        ("format", REMOVED, "format: expected the file format version, format = 1"),
+        ("kind", "rig", 'kind is "rig": expected a week file'),
+        ("rig", 3, "rig is 3: expected text in quotes"),
+    ],
+)  # fmt: skip
+def test_one_mistake_in_a_week_is_one_problem(place: str, value: Any, says: str) -> None:
+    found = [str(problem) for problem in problems_in_week({place: value})]
+    matching = [text for text in found if says in text]
+    assert len(matching) == 1, found
+    in_the_same_place = [text for text in found if text.split(" ")[1] == matching[0].split(" ")[1]]
+    assert len(in_the_same_place) == 1, found
+
+
+@pytest.mark.parametrize(
+    ("changes", "says"),
+    [
+        ({"field": REMOVED}, "targets[0]: expected either `field` or `filling`"),
+        ({"filling": 2}, "targets[0]: expected either `field` or `filling`"),
+        ({"field": REMOVED, "filling": "1/0"}, "targets[0].filling is \"1/0\": expected a filling such as \"1/3\""),
+        ({"field": REMOVED, "filling": True}, "targets[0].filling is true: expected a filling"),
+        ({"temperature": "cold"}, 'targets[0].temperature is "cold": expected a quantity such as "42 mK"'),
+        ({"temperature": "0 K"}, "a temperature is above 0 K"),
+        ({"kind": REMOVED}, "targets[0].kind: expected a kind of target (known: hold, field sweep, gate sweep, "),
+        ({"kind": 3}, "targets[0].kind is 3: expected a kind of target"),
+        ({"sample": ["S1"]}, "targets[0].sample: expected text in quotes"),
+        ({"gates": {"tip": "1 V"}}, 'targets[0].gates.tip is "tip": expected a gate of sample "S1" (did you mean "top"?)'),
+        ({"gates": {"map": "x"}}, 'targets[0].gates.map is "x": expected a quantity such as "0.25 V"'),
+        ({"windows": [{"from": "Tue 9:00"}]}, "targets[0].windows[0].to: is missing"),
+        ({"points": 5}, "targets[0].points: unknown key"),
+    ],
+)  # fmt: skip
+def test_one_mistake_in_a_target(changes: Changes, says: str) -> None:
+    target = {key: value for key, value in {**HOLD, **changes}.items() if value is not REMOVED}
+    found = [str(problem) for problem in problems_in_week(None, [target])]
+    assert [says in text for text in found].count(True) == 1, found
+
+
+@pytest.mark.parametrize(
+    ("target", "says"),
+    [
+        ({"kind": "field sweep", "filling": 1}, "a sweep around one filling needs its `width`"),
+        ({"kind": "field sweep", "filling": "2 to 1", "width": "1 T"}, "`width` goes with one filling"),
+        ({"kind": "field sweep", "filling": "-1 to 1"}, "both ends need the same sign"),
+        ({"kind": "field sweep", "field": "1 T to 1 T"}, "the two ends are the same"),
+        ({"kind": "field sweep", "field": "1 T"}, 'expected a range such as "0 T to 12 T"'),
+        (
+            {"kind": "gate sweep", "field": "1 T", "gate": "top", "sweep": "0 V to 1 V", "points": 5, "second_gate": "back"},
+            "a second gate needs `second_gate`, `second_sweep` and `second_points`",
+        ),
+        (
+            {"kind": "gate sweep", "field": "1 T", "gate": "top", "sweep": "0 V to 1 V", "points": 5, "second_gate": "top",
+             "second_sweep": "0 V to 1 V", "second_points": 3},
+            "second_gate: must be another gate",
+        ),
+        ({"kind": "map", "gate": "top", "sweep": "0 V to 1 V", "points": 5}, "expected one of `field`, `filling`"),
+        ({"kind": "map", "gate": "top", "sweep": "0 V to 1 V", "points": 5, "field": "0 T to 1 T"}, "`rungs` goes with"),
+        ({"kind": "temperature series", "field": "1 T", "temperatures": [], "duration": "1 h"}, "expected at least 1 of them"),
+    ],
+)  # fmt: skip
+def test_targets_must_be_whole(target: Changes, says: str) -> None:
+    found = [str(problem) for problem in problems_in_week(None, [{"name": "T1", **target}])]
+    assert [says in text for text in found].count(True) == 1, found
+
+
+@pytest.mark.parametrize(
+    ("changes", "says"),
+    [
+        ({"magnet.rated": "10 T"}, 'magnet.rated: unknown key (did you mean "rated_field"?)'),
+        ({"magnet.ramp_table.1.rate": "0.12 T"}, 'magnet.ramp_table[1].rate is "0.12 T": expected a quantity such as'),
+        ({"magnet.ramp_table.1.to": "6 T"}, "magnet: ramp_table: the `to` fields must rise"),
+        ({"magnet.rated_field": "10.5 T"}, "ramp_table: ends at 10 T, below the rated field of 10.5 T"),
+        ({"magnet.supply.max_current": "99 A"}, "the rated field needs 100 A, the supply gives 99 A"),
+        ({"magnet.supply.max_voltage": "0.5 V"}, "at 10 T the leads alone take 0.5 V, which leaves none to charge"),
+        ({"magnet.supply.polarity": "both"}, "expected 'bipolar' or 'unipolar'"),
+        ({"bath.calibration.1.volume": "0 L"}, "level and volume must rise"),
+        ({"bath.lines.reserve": "31 %"}, "expected reserve ≤ coil_top ≤ at_field ≤ start_ramp"),
+        ({"bath.calibration.0": {"level": "23 %", "volume": "1 L"}}, "covers 23 % to 100 %, which leaves out a line"),
+        ({"cooler": {}}, "expected one of the tables [bath] and [cooler]"),
+        ({"stage.model": {"warming_constant": "1 s", "cooling_constant": "1 s", "within": "1 %"}}, "or a model"),
+        ({"stage.cooling": REMOVED}, "expected both tables, warming and cooling"),
+        ({"stage.highest": "2 K"}, "warming: must begin above base and reach highest (2 K)"),
+        ({"stage.warming.0.to": "20 mK"}, "warming: must begin above base"),
+        ({"stage.warming.1.time": "1 min"}, "times must not fall"),
+        ({"policies": {"together": ["feild"]}}, "policies.together[0] is \"feild\": expected 'field', 'temperature' or"),
+        ({"kind": "week"}, 'kind is "week": expected a rig file'),
+    ],
+)  # fmt: skip
+def test_one_mistake_in_a_rig(changes: Changes, says: str) -> None:
+    found = [str(problem) for problem in problems_in_rig(changes)]
+    assert len(found) == 1, found
+    assert says in found[0]
+
+
+# Week and rig together
+
+
+@pytest.mark.parametrize(
+    ("week_changes", "rig_changes", "place"),
+    [
+        ({"present.level": REMOVED}, {}, "present.level"),
+        ({}, DRY, "present.level"),
+        ({"present.level": "3 %"}, {"bath.calibration.0": {"level": "5 %", "volume": "1 L"}}, "present.level"),
+        (
+            {"present": {"field": "6 T", "coil": "persistent", "persistent_current": "60 A"}},
+            DRY,
+            "present.coil",
+        ),
+    ],
+)
+def test_a_week_must_fit_its_rig(tmp_path: Path, week_changes: Changes, rig_changes: Changes, place: str) -> None:
+    with pytest.raises(InputError) as caught:
+        read_week(written(tmp_path, week_text(week_changes), rig_text(rig_changes)))
+    assert [problem.where for problem in caught.value.problems] == [place]
+
+
+def test_a_pace_must_be_set_by_something(tmp_path: Path) -> None:
+    sweep = {"gate": "top", "sweep": "0 V to 1 V", "points": 5}
+    targets: list[Changes] = [
+        {"name": "G", "kind": "gate sweep", "field": "1 T", **sweep},
+        {"name": "M", "kind": "map", "fields": ["1 T"], **sweep},
+        {"name": "F", "kind": "field sweep", "field": "0 T to 1 T", "feature": "20 mT"},
+        {"name": "fine", "kind": "gate sweep", "field": "1 T", "dwell": "1 s", **sweep},
+    ]
+    path = written(tmp_path, week_text(None, targets), rig_text())
+    with pytest.raises(InputError) as caught:
+        read_week(path)
+    assert [p.where for p in caught.value.problems] == ["targets[0].dwell", "targets[1].dwell", "targets[2].lockin"]
+    lockin = {"samples.0.lockin": {"time_constant": "1 s"}}
+    assert len(read_week(written(tmp_path, week_text(lockin, targets), rig_text())).week.targets) == 4
+
+
+# Files
+
+
+def test_a_week_and_its_rig_are_read_with_their_hashes(tmp_path: Path) -> None:
+    path = written(tmp_path, week_text(), rig_text())
+    request = read_week(path)
+    assert request.week.title == "A test week"
+    assert request.rig.name == "Round-number rig"
+    assert [(s.role, s.path) for s in request.sources] == [("week", "week.toml"), ("rig", "round.rig.toml")]
+    assert request.sources[0].sha256 == hashlib.sha256(path.read_bytes()).hexdigest()
+    again = request_of(request.sources)
+    assert (again.week, again.rig) == (request.week, request.rig)
+
+
+def test_the_hash_is_the_files_own_whatever_the_line_ends(tmp_path: Path) -> None:
+    raw = b"\xef\xbb\xbf" + rig_text().replace("\n", "\r\n").encode()
+    path = tmp_path / "windows.rig.toml"
+    path.write_bytes(raw)
+    rig, source = read_rig(path)
+    assert rig == parse_rig(rig_text())
+    assert source.sha256 == hashlib.sha256(raw).hexdigest()
+
+
+@pytest.mark.parametrize("place", ["sub/round.rig.toml", "./round.rig.toml", "sub/../round.rig.toml"])
+def test_a_rig_may_lie_beside_the_week_or_below(tmp_path: Path, place: str) -> None:
+    (tmp_path / "sub").mkdir()
+    (tmp_path / place).write_text(rig_text(), encoding="utf-8")
+    assert read_week(written(tmp_path, week_text({"rig": place}))).rig.name == "Round-number rig"
+
+
+@pytest.mark.parametrize(
+    "place", ["../round.rig.toml", "/etc/hostname", "sub/../../round.rig.toml", "a\x00b", "x" * 190 + "/../../r.toml"]
+)
+def test_a_rig_elsewhere_is_refused(tmp_path: Path, place: str) -> None:
+    folder = tmp_path / "weeks"
+    folder.mkdir()
+    (tmp_path / "round.rig.toml").write_text(rig_text(), encoding="utf-8")
+    with pytest.raises(InputError, match="relative path of a rig file in the week's folder or below it"):
+        read_week(written(folder, week_text({"rig": place})))
+
+
+def test_a_rig_that_a_link_leads_out_to_is_refused(tmp_path: Path) -> None:
+    folder = tmp_path / "weeks"
+    folder.mkdir()
+    (tmp_path / "outside.toml").write_text(rig_text(), encoding="utf-8")
+    (folder / "round.rig.toml").symlink_to(tmp_path / "outside.toml")
+    with pytest.raises(InputError, match="in the week's folder or below it"):
+        read_week(written(folder, week_text()))
+
+
+def test_a_rig_that_is_not_there_gets_the_nearest_name(tmp_path: Path) -> None:
+    path = written(tmp_path, week_text({"rig": "round.rg.toml"}), rig_text())
+    with pytest.raises(InputError) as caught:
+        read_week(path)
+    assert [(p.where, p.hint) for p in caught.value.problems] == [("rig", 'did you mean "round.rig.toml"?')]
+
+
+@pytest.mark.parametrize("name", ["", ".", "x" * 300])
+def test_odd_rig_names_are_problems_not_crashes(tmp_path: Path, name: str) -> None:
+    with pytest.raises(InputError) as caught:
+        read_week(written(tmp_path, week_text({"rig": name}), rig_text()))
+    assert "rig" in {problem.where for problem in caught.value.problems}
+
+
+@pytest.mark.parametrize(
+    ("raw", "says"),
+    [
+        (b"", "the file is empty"),
+        (b"# nothing\n", "the file is empty"),
+        (b"title = \xff\xfe", "expected text in UTF-8"),
+        (b"title = ", "not valid TOML"),
+        (b"a = " + b"[" * 20000, "not valid TOML"),
+        (b"a = 1" + b"0" * 5000, "not valid TOML"),
+        (b"#" * (LARGEST_FILE + 1), f"{LARGEST_FILE + 1} bytes: expected at most {LARGEST_FILE} bytes"),
+    ],
+)
+def test_files_that_cannot_be_read(tmp_path: Path, raw: bytes, says: str) -> None:
+    path = tmp_path / "odd.toml"
+    path.write_bytes(raw)
+    for read in (read_week, read_rig):
+        with pytest.raises(InputError) as caught:
+            read(path)
+        (problem,) = caught.value.problems
+        assert says in str(problem)
+        assert problem.file == "odd.toml"
+
+
+def test_no_file_a_folder_and_an_impossible_name(tmp_path: Path) -> None:
+    for path, says in [
+        (tmp_path / "none.toml", "there is no such file"),
+        (tmp_path, "expected a file"),
+        (tmp_path / ("x" * 300), "cannot be read"),
+        (tmp_path / "a\x00b", "cannot be read"),
+    ]:
+        with pytest.raises(InputError) as caught:
+            read_week(path)
+        (problem,) = caught.value.problems
+        assert problem.expected.startswith(says)
+
+
+def test_too_many_targets_are_one_problem() -> None:
+    (problem,) = problems_in_week(None, [{"name": f"T{n}"} for n in range(MOST_TARGETS + 1)])
+    assert (problem.where, problem.value) == ("targets", f"{MOST_TARGETS + 1} rows")
+
+
+ODD = st.recursive(
+    st.none() | st.booleans() | st.integers() | st.floats(allow_nan=False) | st.sampled_from(["", "S1", "5 T", "Tue"]),
+    lambda inner: st.lists(inner, max_size=2) | st.dictionaries(st.sampled_from(["name", "from", "to"]), inner),
+    max_leaves=4,
+).filter(lambda value: value is not None)
+PLACES = st.sampled_from(
+    ["start", "end", "zone", "rig", "present", "users", "samples", "targets", "quiet", "helium", "people", "title",
+     "users.0.slots", "samples.0.name", "samples.0.gates", "samples.0.gates.0.name", "targets.0.sample",
+     "targets.0.after", "targets.0.gates", "targets.0.windows", "targets.0.kind", "targets.0.name", "present.gates",
+     "helium.deliveries", "people.0.away", "quiet.0.from"]
+)  # fmt: skip
+
+
+@settings(max_examples=250, deadline=None)
+@given(st.dictionaries(PLACES, ODD, min_size=1, max_size=3))
+def test_odd_values_anywhere_are_problems_not_crashes(changes: dict[str, Any]) -> None:
+    rows: Changes = {"people": [{"name": "P"}], "quiet": [{"name": "q", "from": "Tue 9:00", "to": "Tue 10:00"}]}
+    nested = sorted(changes, key=lambda place: -place.count("."))  # inner places before what holds them is replaced
+    nest: dict[str, Any] = {**rows, **{place: _without_none(changes[place]) for place in nested}}
+    try:
+        parse_week(week_text(nest, [HOLD]))
+    except InputError as error:
+        assert error.problems  # noqa: PT017 - either outcome is right, nothing else is
+
+
+def _without_none(value: Any) -> Any:
+    if isinstance(value, list):
+        return [_without_none(one) for one in value if one is not None]
+    if isinstance(value, dict):
+        return {key: _without_none(one) for key, one in value.items() if one is not None}
+    return value
+
+
+@pytest.mark.parametrize("path", sorted(EXAMPLES.glob("*.rig.toml")), ids=lambda path: path.name)
+def test_the_demo_rigs_can_be_read(path: Path) -> None:
+    assert read_rig(path)[0].name
+
+
+def test_the_first_demo_week_can_be_read() -> None:
+    assert len(read_week(EXAMPLES / "first_week.toml").week.targets) == 8
