@@ -19,8 +19,24 @@ def zone(name: str) -> ZoneInfo:
         raise ValueError('expected an IANA time zone such as "Europe/Vienna"') from error
 
 
+def iso_datetime(written: str) -> datetime | None:
+    """The datetime that text such as "2031-03-04T20:00" spells; None where it spells none, or a date alone."""
+    try:
+        return datetime.fromisoformat(written.strip()) if ":" in written else None
+    except ValueError:
+        return None
+
+
 def localise(moment: datetime, where: ZoneInfo) -> datetime:
-    """``moment`` as an instant of ``where``. A wall time that a clock change skips or repeats raises ValueError."""
+    """``moment`` as an instant of ``where``.
+
+    Raises
+    ------
+    ValueError
+        For a wall time that a clock change skips or repeats, and for a year outside 1970–2199.
+    """
+    if not 1970 <= moment.year <= 2199:
+        raise ValueError("expected a year from 1970 to 2199")
     if moment.tzinfo is not None:
         return moment.astimezone(where)
     early, late = (moment.replace(tzinfo=where, fold=fold) for fold in (0, 1))
@@ -56,11 +72,16 @@ class Clock:
         return (self.start.astimezone(UTC) + timedelta(seconds=second)).astimezone(self.where)
 
     def wall(self, day: datetime, at: time) -> datetime:
-        """The instant of wall time ``at`` on the date of ``day``; a skipped time moves past the gap, a repeated one is the first."""
+        """The instant of wall time ``at`` on the date of ``day``.
+
+        A time that a clock change skips moves past the gap; one that it repeats is the first of the two.
+        """
         return datetime.combine(day.date(), at, tzinfo=self.where).astimezone(UTC).astimezone(self.where)
 
     def read(self, written: datetime | str) -> datetime:
         """A datetime as a file writes it: local, with an offset, or "Tue 20:00" (the first at or after the start).
+
+        Text such as "2031-03-04T20:00" is read as the datetime it spells.
 
         Raises
         ------
@@ -71,6 +92,8 @@ class Clock:
             return localise(written, self.where)
         match = _WEEKDAY_TIME.fullmatch(written)
         if match is None:
+            if (spelled := iso_datetime(written)) is not None:
+                return localise(spelled, self.where)
             raise ValueError('expected a date and time such as 2031-03-04T20:00 or "Tue 20:00"')
         weekday = [day.lower() for day in WEEKDAYS].index(match[1][:3].lower())
         hour, minute, second = int(match[2]), int(match[3]), int(match[4] or 0)
@@ -78,5 +101,6 @@ class Clock:
             raise ValueError('expected a time of day between 00:00 and 23:59, such as "Tue 20:00"')
         days = (weekday - self.start.weekday()) % 7
         naive = datetime.combine(self.start.date() + timedelta(days=days), time(hour, minute, second))
-        found = localise(naive, self.where)
-        return found if found >= self.start else localise(naive + timedelta(days=7), self.where)
+        if naive < self.start.replace(tzinfo=None):
+            naive += timedelta(days=7)
+        return localise(naive, self.where)

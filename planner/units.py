@@ -18,6 +18,7 @@ if TYPE_CHECKING:
 _NUMBER = re.compile(r"\s*([+\-−]?(?:\d+\.?\d*|\.\d+)(?:[eE][+\-−]?\d{1,3})?)\s*(.*?)\s*", re.DOTALL)
 _UNIT = re.compile(r"[A-Za-zµμΩΩ°%/*^·()\-\d\s.²³⁻¹⁴]{0,40}")
 _BARE_POWER = re.compile(r"(?<=[A-Za-z])(-\d)")  # "cm-2" means "cm^-2"
+_COMMA = re.compile(r",\d")
 _COMPOUND = re.compile(r"\s*(\d+)\s*h\s*(\d+)\s*min\s*")
 
 _EXAMPLES = {
@@ -43,13 +44,18 @@ _EXAMPLES = {
     "percent": "85 %",
 }
 
+_PLAIN = {"1/m**2": "m^-2", "1/m**2/V": "m^-2/V", "m**3": "m^3", "percent": "%"}
+"""Units that people write otherwise than pint's expressions."""
+
 _HINTS = {
     ("s", "m"): "m is metres: minutes are written min",
     ("K", "k"): "kelvin is written with a capital K",
     ("K", "degC"): "give an absolute temperature in K",
     ("K", "C"): "give an absolute temperature in K",
+    ("K", "°C"): "give an absolute temperature in K",
     ("T", "t"): "tesla is written with a capital T",
-    ("L", "l"): "litres are written with a capital L",
+    ("T", "G"): "give the field in tesla, 1 T is 10 000 G",
+    ("T", "kG"): "give the field in tesla, 1 T is 10 kG",
 }
 
 
@@ -82,7 +88,8 @@ def _factor(written: str, unit: str) -> float | None:
 
     registry = _registry()
     try:
-        found = registry.parse_units(_BARE_POWER.sub(r"^\1", written).replace("−", "-"))
+        whole = f"dimensionless{written}" if written.startswith("/") else written  # "1e11/cm^2"
+        found = registry.parse_units(_BARE_POWER.sub(r"^\1", whole).replace("−", "-"))
         one, two = (float(registry.Quantity(count, found).m_as(unit)) for count in (1.0, 2.0))
         return one if abs(two - 2 * one) <= 1e-9 * abs(one) else None  # degC has an offset: no factor
     except (pint.errors.PintError, ArithmeticError, AttributeError, TypeError, ValueError, AssertionError):
@@ -121,6 +128,8 @@ def parse_amount(text: object, unit: str) -> Amount:
     if match is None:
         raise ValueError(expected)
     number, written = match.groups()
+    if _COMMA.match(written):
+        raise ValueError(f"{expected}: write a decimal point, not a comma")
     if not written:
         raise ValueError(f'{expected}: the unit is missing; for example "{number} {short(unit)}"')
     if compound := _COMPOUND.fullmatch(text):
@@ -145,17 +154,24 @@ def short(unit: str) -> str:
 class In:
     """Annotation of a float field: text with a unit in files, a float in ``unit`` inside.
 
-    ``above`` excludes its own value, ``least`` and ``most`` include theirs; all are in ``unit``.
+    ``above`` excludes its own value, ``least`` and ``most`` include theirs; all are in ``unit``. ``word`` is text that
+    may stand in place of a quantity, such as "base"; it passes unchanged.
     """
 
     unit: str
     above: float | None = None
     least: float | None = None
     most: float | None = None
+    word: str = ""
 
-    def parse(self, value: object) -> Amount:
+    def parse(self, value: object) -> Amount | str:
         """Read and bound one value; raises ValueError as `parse_amount` does."""
-        amount = parse_amount(value, self.unit)
+        if self.word and value == self.word:
+            return self.word
+        try:
+            amount = parse_amount(value, self.unit)
+        except ValueError as error:
+            raise ValueError(f'{error}; or the word "{self.word}"' if self.word else str(error)) from None
         if self.above is not None and not amount > self.above:
             raise ValueError(f"must be more than {self.above:g} {self.unit}")
         if self.least is not None and not amount >= self.least:
@@ -164,23 +180,26 @@ class In:
             raise ValueError(f"must be at most {self.most:g} {self.unit}")
         return amount
 
+    def write(self, value: float | str) -> str:
+        """The text that reads as ``value``: as its author wrote it, or, for a default, in ``unit``."""
+        if isinstance(value, str):
+            return value
+        return value.text if isinstance(value, Amount) else f"{float(value)!r} {_PLAIN.get(self.unit, self.unit)}"
+
     def __get_pydantic_core_schema__(self, source: Any, handler: GetCoreSchemaHandler) -> CoreSchema:
         from pydantic_core import core_schema
 
         return core_schema.no_info_plain_validator_function(
             self.parse,
-            serialization=core_schema.plain_serializer_function_ser_schema(_written),
+            serialization=core_schema.plain_serializer_function_ser_schema(self.write),
         )
 
     def __get_pydantic_json_schema__(self, schema: CoreSchema, handler: GetJsonSchemaHandler) -> dict[str, Any]:
-        shown: dict[str, Any] = {"type": "string", "unit": short(self.unit), "examples": [example(self.unit)]}
+        examples = [example(self.unit), *([self.word] if self.word else [])]
+        shown: dict[str, Any] = {"type": "string", "unit": short(self.unit), "examples": examples}
         bounds = {"exclusiveMinimum": self.above, "minimum": self.least, "maximum": self.most}
         limits = {key: f"{value:g} {self.unit}" for key, value in bounds.items() if value is not None}
         return {**shown, **({"limits": limits} if limits else {})}
-
-
-def _written(value: float) -> str | float:
-    return value.text if isinstance(value, Amount) else value
 
 
 Tesla = Annotated[float, In("T")]

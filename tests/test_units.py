@@ -140,6 +140,14 @@ def test_bounds_name_the_limit_and_its_unit() -> None:
         share.parse("101 %")
 
 
+@pytest.mark.parametrize("unit", UNITS)
+def test_a_default_is_written_as_text_that_reads_as_itself(unit: str) -> None:
+    for value in (0.0, 0.25, 1 / 3, 1.1e15):
+        assert float(parse_amount(In(unit).write(value), unit)) == pytest.approx(value, rel=1e-15)
+    assert In("K", word="base").write("base") == "base"
+    assert In("K").write(parse_amount("42 mK", "K")) == "42 mK"
+
+
 def test_a_word_may_stand_for_a_quantity_where_the_field_says_so() -> None:
     kelvin = In("K", above=0, word="base")
     assert kelvin.parse("base") == "base"

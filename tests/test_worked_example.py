@@ -150,6 +150,6 @@ def test_the_sheet_carries_these_numbers(plan: Plan, tmp_path: Path) -> None:
     (sheet,) = write_sheets(plan, tmp_path, ["csv"])
     rows = list(csv.DictReader(sheet.read_text(encoding="utf-8-sig").splitlines()))
     assert [int(row["start_s"]) for row in rows] == [row[1] for row in BY_HAND]
-    assert [int(row["seconds"]) for row in rows] == [row[2] - row[1] for row in BY_HAND]
+    assert [int(row["duration_s"]) for row in rows] == [row[2] - row[1] for row in BY_HAND]
     assert [float(row["helium_after_L"]) for row in rows] == pytest.approx([row[4] for row in BY_HAND], abs=5e-4)
     assert [float(row["field_to_T"]) for row in rows] == [6, 4, 4, 0, 0]

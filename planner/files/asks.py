@@ -81,8 +81,12 @@ def read_volt_range(written: object) -> Range:
 
 
 def read_filling_range(written: object) -> Range:
-    """ "2/5 to 1/3". Raises ValueError otherwise."""
-    return _read_range(written, read_filling, 'expected a range of fillings such as "2/5 to 1/3"')
+    """ "2/5 to 1/3", both of one sign. Raises ValueError otherwise."""
+    expected = 'expected a range of fillings such as "2/5 to 1/3"'
+    found = _read_range(written, read_filling, expected)
+    if found.first * found.last < 0:
+        raise ValueError(f"{expected}: both ends need the same sign, filling 0 lies at no field")
+    return found
 
 
 @dataclass(frozen=True, slots=True)

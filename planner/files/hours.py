@@ -8,7 +8,7 @@ from typing import Annotated, Any
 
 from pydantic import BeforeValidator, Field, PlainSerializer, WithJsonSchema
 
-from planner.clock import WEEKDAYS
+from planner.clock import WEEKDAYS, iso_datetime
 from planner.files.model import Table
 
 _TIME = re.compile(r"\s*(\d{1,2}):(\d{2})\s*")
@@ -52,6 +52,14 @@ def read_time(written: object) -> time:
     return time(hour, minute)
 
 
+def read_datetime(written: object) -> datetime:
+    """A date with a time of day, as TOML's own or as text that spells one. Raises ValueError otherwise."""
+    found = iso_datetime(written) if isinstance(written, str) else written
+    if not isinstance(found, datetime):
+        raise ValueError("expected a date and time such as 2031-03-03T08:30:00")
+    return found
+
+
 def _read_moment(written: Any) -> datetime | str:
     if isinstance(written, (datetime, str)):
         return written
@@ -70,6 +78,7 @@ TimeOfDay = Annotated[
     PlainSerializer(lambda at: f"{at:%H:%M}"),
     WithJsonSchema({"type": "string", "examples": ["08:30"]}),
 ]
+DateAndTime = Annotated[datetime, BeforeValidator(read_datetime)]
 Moment = Annotated[
     datetime | str,
     BeforeValidator(_read_moment),

@@ -9,13 +9,12 @@ from pathlib import Path
 from typing import Any, Literal, TypeVar
 
 from pydantic import BaseModel, ValidationError
-from pydantic_core import ErrorDetails
 
 from planner.errors import InputError, Problem
-from planner.files.model import Table
+from planner.files.problems import problems_of, shown
 from planner.files.references import nearest, reference_problems
 from planner.files.rig import Rig
-from planner.files.targets import TARGET_KINDS, FieldSweep, GateSweep, Map
+from planner.files.targets import FieldSweep, GateSweep, Map
 from planner.files.versions import migrate
 from planner.files.week import Week
 from planner.plan import Source
@@ -89,7 +88,7 @@ def source(role: _Role, path: str, text: str) -> Source:
 
 def parse_week(text: str, file: str = "week") -> Week:
     """A week from TOML text; raises InputError with every problem."""
-    data = migrate(_toml(text, file), "week", file)
+    data = migrate(_of_kind(_toml(text, file), "week", file), "week", file)
     targets = data.get("targets")
     if isinstance(targets, list) and len(targets) > MOST_TARGETS:
         raise InputError([Problem(file, "targets", f"{len(targets)} rows", f"a week holds {MOST_TARGETS} at most")])
@@ -102,7 +101,7 @@ def parse_week(text: str, file: str = "week") -> Week:
 
 def parse_rig(text: str, file: str = "rig") -> Rig:
     """A rig from TOML text; raises InputError with every problem."""
-    data = migrate(_toml(text, file), "rig", file)
+    data = migrate(_of_kind(_toml(text, file), "rig", file), "rig", file)
     rig, problems = _validate(Rig, data, file)
     if problems or rig is None:
         raise InputError(problems)
@@ -110,29 +109,40 @@ def parse_rig(text: str, file: str = "rig") -> Rig:
 
 
 def _text_of(path: Path) -> str:
+    """The text of a file, byte for byte, so that its hash is the file's."""
+    name = path.name[:200] or "."
     try:
         size = path.stat().st_size
         if not path.is_file():
-            raise InputError([Problem(path.name, "", "", "expected a file")])
-        if size > LARGEST_FILE:
-            raise InputError([Problem(path.name, "", f"{size} bytes", f"expected at most {LARGEST_FILE} bytes")])
-        text = path.read_text(encoding="utf-8")
+            wrong = Problem(name, "", "", "expected a file")
+        elif size > LARGEST_FILE:
+            wrong = Problem(name, "", f"{size} bytes", f"expected at most {LARGEST_FILE} bytes")
+        else:
+            return path.read_bytes().decode("utf-8")
     except FileNotFoundError:
-        raise InputError([Problem(str(path), "", "", "there is no such file")]) from None
+        wrong = Problem(str(path)[:200], "", "", "there is no such file")
     except UnicodeDecodeError:
-        raise InputError([Problem(path.name, "", "", "expected text in UTF-8")]) from None
+        wrong = Problem(name, "", "", "expected text in UTF-8")
     except (OSError, ValueError) as error:
-        raise InputError([Problem(str(path)[:200], "", "", f"cannot be read: {error}")]) from None
-    return text
+        wrong = Problem(name, "", "", f"cannot be read: {str(error)[:200]}")
+    raise InputError([wrong])
 
 
 def _toml(text: str, file: str) -> dict[str, Any]:
     try:
-        data = tomllib.loads(text)
+        data = tomllib.loads(text.removeprefix("\ufeff"))  # some editors put a byte-order mark first
     except (tomllib.TOMLDecodeError, RecursionError, ValueError) as error:
         raise InputError([Problem(file, "", "", f"not valid TOML: {error}")]) from None
     if not data:
         raise InputError([Problem(file, "", "", "the file is empty")])
+    return data
+
+
+def _of_kind(data: dict[str, Any], kind: _Role, file: str) -> dict[str, Any]:
+    """The data themselves; a file of the other kind is one problem, not one for every key."""
+    other = "rig" if kind == "week" else "week"
+    if data.get("kind") == other:
+        raise InputError([Problem(file, "kind", f'"{other}"', f"expected a {kind} file")])
     return data
 
 
@@ -144,23 +154,15 @@ def _rig_path(data: dict[str, Any], week: Path) -> Path:
     expected = "expected the relative path of a rig file in the week's folder or below it"
     try:
         path = (folder / written).resolve()
+        within, there = path.is_relative_to(folder) and not Path(written).is_absolute(), path.is_file()
     except (OSError, ValueError, RuntimeError):
-        raise InputError([Problem(week.name, "rig", f'"{written[:80]!r}"', expected)]) from None
-    if Path(written).is_absolute() or not path.is_relative_to(folder):
-        raise InputError([Problem(week.name, "rig", f'"{written[:80]}"', expected)])
-    if not path.is_file():
-        others = sorted(str(other.relative_to(folder)) for other in folder.glob("*.toml") if other != week.resolve())
-        raise InputError(
-            [
-                Problem(
-                    week.name,
-                    "rig",
-                    f'"{written[:80]}"',
-                    "there is no such rig file",
-                    nearest(written, others),
-                )
-            ]
-        )
+        within, there = False, False
+    if not within:
+        raise InputError([Problem(week.name, "rig", shown(written), expected)])
+    if not there:
+        others = sorted(other.name for other in folder.glob("*.toml") if other != week.resolve())
+        missing = Problem(week.name, "rig", shown(written), "there is no such rig file", nearest(written, others))
+        raise InputError([missing])
     return path
 
 
@@ -168,60 +170,7 @@ def _validate(model: type[_Model], data: dict[str, Any], file: str) -> tuple[_Mo
     try:
         return model.model_validate(data), []
     except ValidationError as error:
-        return None, [_problem(file, model, detail) for detail in error.errors(include_url=False)]
-
-
-def _problem(file: str, model: type[BaseModel], detail: ErrorDetails) -> Problem:
-    place = [part for part in detail["loc"] if part not in TARGET_KINDS]
-    kind = detail["type"]
-    where = "".join(f"[{part}]" if isinstance(part, int) else f".{part}" for part in place).lstrip(".")
-    shown = "" if isinstance(detail["input"], (dict, list)) else _shown(detail["input"])
-    if kind == "missing":
-        return Problem(file, where, "", "is missing")
-    if kind == "extra_forbidden":
-        return Problem(file, where, "", "unknown key", nearest(str(place[-1]), _known_keys(model, detail["loc"])))
-    if kind in ("union_tag_invalid", "union_tag_not_found"):
-        written = detail["input"].get("kind") if isinstance(detail["input"], dict) else None
-        hint = nearest(str(written), list(TARGET_KINDS)) if written is not None else ", ".join(TARGET_KINDS)
-        return Problem(
-            file,
-            f"{where}.kind",
-            "" if written is None else _shown(written),
-            "expected a kind of target",
-            hint,
-        )
-    message = detail["msg"].removeprefix("Value error, ")
-    if kind == "literal_error":
-        message = f"expected {detail['ctx']['expected']}"
-    return Problem(file, where, shown, message)
-
-
-def _shown(value: Any) -> str:
-    text = f'"{value}"' if isinstance(value, str) else str(value)
-    return text if len(text) <= 60 else text[:57] + '…"'
-
-
-def _known_keys(model: type[BaseModel], loc: tuple[int | str, ...]) -> list[str]:
-    """Keys of the table in which the last part of ``loc`` stands."""
-    found: type[BaseModel] | None = model
-    for part in loc[:-1]:
-        if isinstance(part, int) or found is None:
-            continue
-        if part in TARGET_KINDS:
-            found = TARGET_KINDS[part]
-            continue
-        fields = {field.alias or name: field for name, field in found.model_fields.items()}
-        found = _table_in(fields[part].annotation) if part in fields else None
-    if found is None:
-        return []
-    return [field.alias or name for name, field in found.model_fields.items()]
-
-
-def _table_in(annotation: Any) -> type[Table] | None:
-    if isinstance(annotation, type) and issubclass(annotation, Table):
-        return annotation
-    inner = (_table_in(part) for part in getattr(annotation, "__args__", ()))
-    return next((table for table in inner if table is not None), None)
+        return None, problems_of(error, model, file)
 
 
 def _fit_problems(week: Week, rig: Rig, file: str) -> list[Problem]:

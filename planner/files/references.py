@@ -10,10 +10,12 @@ from typing import Any
 
 from planner.clock import Clock, localise, zone
 from planner.errors import Problem
+from planner.files.hours import read_datetime
 
 
 def nearest(name: str, known: list[str]) -> str:
     """A hint that offers the nearest known name, or lists them."""
+    known = [one for one in known if one]
     close = get_close_matches(name, known, n=1, cutoff=0.6)
     if close:
         return f'did you mean "{close[0]}"?'
@@ -55,6 +57,10 @@ def _twice(data: dict[str, Any], file: str) -> Iterator[Problem]:
                 yield Problem(file, f"{key}[{at}].{field}", f'"{name}"', "this name is taken already")
             elif isinstance(name, str):
                 seen.add(name)
+    for at, row in _tables(data, "samples"):
+        names = _names(row, "gates")
+        for name in dict.fromkeys(name for place, name in enumerate(names) if name in names[:place]):
+            yield Problem(file, f"samples[{at}].gates", f'"{name}"', "this name is taken already")
 
 
 def _unknown(data: dict[str, Any], file: str) -> Iterator[Problem]:
@@ -77,9 +83,9 @@ def _unknown(data: dict[str, Any], file: str) -> Iterator[Problem]:
 
 
 def _gates(data: dict[str, Any], file: str) -> Iterator[Problem]:
-    gates = {row.get("name"): _names(row, "gates") for _, row in _tables(data, "samples")}
+    gates = {str(row.get("name")): _names(row, "gates") for _, row in _tables(data, "samples")}
     for at, row in _tables(data, "targets"):
-        known = gates.get(row.get("sample"))
+        known = gates.get(str(row.get("sample")))
         if known is None:
             continue
         held = row["gates"] if isinstance(row.get("gates"), dict) else {}
@@ -106,15 +112,27 @@ def _circles(data: dict[str, Any], file: str) -> Iterator[Problem]:
         for other in _texts(row.get("after")):
             later.setdefault(other, set()).add(name)
         later[name].update(_texts(row.get("before")))
+    circle = _circle(later)
+    if circle:
+        names = " → ".join(f'"{name}"' for name in [*circle, circle[0]])
+        expected = "`after` and `before` go round in a circle, so none of these can be first"
+        yield Problem(file, "targets", names, expected)
+
+
+def _circle(later: dict[str, set[str]]) -> list[str]:
+    """Names that follow one another round a circle, the first found; empty where there is none."""
     left = {name: set(others) for name, others in later.items()}
     while free := [name for name, others in left.items() if not others & left.keys()]:
         for name in free:
             del left[name]
-    if left:
-        names = " → ".join(sorted(left))
-        yield Problem(
-            file, "targets", names, "`after` and `before` go round in a circle, so none of these can be first"
-        )
+    if not left:
+        return []
+    path = [next(iter(left))]
+    while True:  # every name left has a follower that is left
+        follower = min(left[path[-1]] & left.keys())
+        if follower in path:
+            return path[path.index(follower) :]
+        path.append(follower)
 
 
 def _clock(data: dict[str, Any], file: str) -> tuple[Clock | None, list[Problem]]:
@@ -125,11 +143,14 @@ def _clock(data: dict[str, Any], file: str) -> tuple[Clock | None, list[Problem]
         return None, []
     moments: dict[str, datetime] = {}
     for key in ("start", "end"):
-        if isinstance(data.get(key), datetime):
-            try:
-                moments[key] = localise(data[key], where)
-            except ValueError as error:
-                problems.append(Problem(file, key, "", str(error)))
+        try:
+            written = read_datetime(data.get(key))
+        except ValueError:
+            continue  # the missing or mistyped key is reported by the model
+        try:
+            moments[key] = localise(written, where)
+        except ValueError as error:
+            problems.append(Problem(file, key, str(data[key]), str(error)))
     if "start" not in moments:
         return None, problems
     clock = Clock(moments["start"])
@@ -150,8 +171,8 @@ def _times(data: dict[str, Any], file: str) -> Iterator[Problem]:
     slots: list[tuple[int, int, str]] = []
     for place, row in _spans(data):
         read = _span(clock, row)
-        if isinstance(read, str):
-            yield Problem(file, place, f"{row.get('from', '')} to {row.get('to', '')}", read)
+        if isinstance(read, list):
+            yield Problem(file, place, f"{row['from']} to {row['to']}", *read)
         elif read and place.startswith("users"):
             slots.append((*read, place))
     for (begin, finish, place), (other_begin, other_finish, other) in combinations(sorted(slots), 2):
@@ -159,10 +180,13 @@ def _times(data: dict[str, Any], file: str) -> Iterator[Problem]:
             yield Problem(file, other, "", f"overlaps {place}; the magnet can be promised once only")
     helium = data.get("helium")
     for at, row in _tables(helium, "deliveries"):
+        written = row.get("at")
+        if not isinstance(written, (datetime, str)):
+            continue  # the missing or mistyped key is reported by the model
         try:
-            clock.read(row.get("at", ""))
+            clock.read(written)
         except ValueError as error:
-            yield Problem(file, f"helium.deliveries[{at}].at", str(row.get("at")), str(error))
+            yield Problem(file, f"helium.deliveries[{at}].at", str(written), str(error))
 
 
 def _spans(data: dict[str, Any]) -> Iterator[tuple[str, dict[str, Any]]]:
@@ -174,7 +198,8 @@ def _spans(data: dict[str, Any]) -> Iterator[tuple[str, dict[str, Any]]]:
                 yield f"{key}[{at}].{inner}[{place}]", span
 
 
-def _span(clock: Clock, row: dict[str, Any]) -> tuple[int, int] | str | None:
+def _span(clock: Clock, row: dict[str, Any]) -> tuple[int, int] | list[str] | None:
+    """Begin and finish in seconds; or what was expected, with a hint; or nothing where the model has a say first."""
     ends = []
     for key in ("from", "to"):
         written = row.get(key)
@@ -183,7 +208,8 @@ def _span(clock: Clock, row: dict[str, Any]) -> tuple[int, int] | str | None:
         try:
             ends.append(clock.second(clock.read(written)))
         except ValueError as error:
-            return str(error)
+            return [str(error)]
     if ends[1] <= ends[0]:
-        return "ends before it begins"
+        hint = "a weekday alone is its first one from the week's start on"
+        return ["must end after it begins", hint if isinstance(row["from"], str) else ""]
     return ends[0], ends[1]

@@ -81,10 +81,16 @@ class Magnet(Table):
             raise ValueError("ramp_table: the `to` fields must rise from row to row")
         if edges[-1] < self.rated_field_T:
             raise ValueError(f"ramp_table: ends at {edges[-1]:g} T, below the rated field of {self.rated_field_T:g} T")
+        leads_V = edges[-1] / self.field_per_current_T_per_A * self.supply.lead_resistance_ohm
+        if leads_V >= self.supply.max_voltage_V:
+            raise ValueError(
+                f"supply.max_voltage: at {edges[-1]:g} T the leads alone take {leads_V:.3g} V, which leaves none to charge"
+            )
         needed_A = self.rated_field_T / self.field_per_current_T_per_A
         if needed_A > self.supply.max_current_A * (1 + 1e-9):
+            given_A = self.supply.max_current_A
             raise ValueError(
-                f"supply.max_current: the rated field needs {needed_A:.4g} A, the supply gives {self.supply.max_current_A:.4g} A"
+                f"supply.max_current: the rated field needs {needed_A:.4g} A, the supply gives {given_A:.4g} A"
             )
         return self
 
@@ -175,7 +181,7 @@ class CoolingPoint(Table):
 
 
 class SettleAfterRamp(Table):
-    """How long the stage takes to come back after the field has moved, where the temperature wanted is below ``below_K``."""
+    """How long the stage takes to come back after the field has moved, for a wanted temperature below ``below_K``."""
 
     below_K: Kelvin
     time_s: Seconds

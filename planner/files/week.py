@@ -2,14 +2,13 @@
 
 from __future__ import annotations
 
-from datetime import datetime
 from typing import Annotated, Literal
 from zoneinfo import ZoneInfo
 
 from pydantic import AfterValidator, Field, model_validator
 
 from planner.clock import Clock, localise, zone
-from planner.files.hours import Hours, Moment, Span
+from planner.files.hours import DateAndTime, Hours, Moment, Span
 from planner.files.model import Table
 from planner.files.targets import AnyTarget, LockIn, Name, Note
 from planner.units import (
@@ -18,7 +17,6 @@ from planner.units import (
     DensityPerVolt,
     HoursPerLitre,
     In,
-    Kelvin,
     Litres,
     Percent,
     PositiveLitres,
@@ -28,6 +26,7 @@ from planner.units import (
 )
 
 WEEK_FORMAT: Literal[1] = 1
+KelvinOrBase = Annotated[float | Literal["base"], In("K", above=0, word="base")]
 
 
 def _zone_exists(name: str) -> str:
@@ -121,8 +120,8 @@ class Present(Table):
         default=None, description="left out: zero, or driven at a field"
     )
     lead_current_A: Ampere | None = None
-    persistent_current_A: Ampere | Literal["unknown"] | None = None
-    temperature_K: Kelvin | Literal["base"] = "base"
+    persistent_current_A: Annotated[float | Literal["unknown"], In("A", word="unknown")] | None = None
+    temperature_K: KelvinOrBase = "base"
     gates: dict[str, Volt] = Field(default={}, description='by "sample/gate"; the others are at rest')
 
     @model_validator(mode="after")
@@ -140,7 +139,7 @@ class WantedEnd(Table):
     """The rig as the week shall end. The coil carries no current at zero field and is driven elsewhere."""
 
     field_T: Tesla = 0.0
-    temperature_K: Kelvin | Literal["base"] = "base"
+    temperature_K: KelvinOrBase = "base"
 
 
 class Objective(Table):
@@ -157,8 +156,8 @@ class Week(Table):
     title: Annotated[str, Field(min_length=1, max_length=120)]
     rig: Annotated[str, Field(min_length=1, max_length=200)]
     zone: Annotated[str, AfterValidator(_zone_exists)]
-    start: datetime
-    end: datetime
+    start: DateAndTime
+    end: DateAndTime
     present: Present
     wanted_end: WantedEnd = WantedEnd()
     staffed: tuple[Hours, ...] = ()

@@ -16,7 +16,7 @@ if TYPE_CHECKING:
     import pandas as pd
     from pydantic import TypeAdapter
 
-PLAN_FORMAT = 1
+PLAN_FORMAT: Literal[1] = 1
 
 
 class StepKind(StrEnum):
@@ -133,7 +133,8 @@ class Score:
 class HandOrder:
     """An order people use by hand, put through the same moves, services and checks on the same takes.
 
-    ``plan`` numbers are those of this plan restricted to the takes that the hand order also fits; ``takes`` counts them.
+    ``plan`` numbers are those of this plan restricted to the takes that the hand order also fits; ``takes`` counts
+    them.
     """
 
     name: str
@@ -174,7 +175,7 @@ class Plan:
     findings: tuple[Finding, ...] = ()
     recovery: bool = False
     made_by: str = ""
-    format: int = PLAN_FORMAT
+    format: Literal[1] = PLAN_FORMAT
 
     @property
     def clock(self) -> Clock:

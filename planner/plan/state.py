@@ -26,7 +26,10 @@ class CoilMode(StrEnum):
 
 @dataclass(frozen=True, slots=True)
 class Coil:
-    """Magnet and supply. ``persistent_current_A`` is None where nothing is trapped and "unknown" where nobody logged it."""
+    """Magnet and supply.
+
+    ``persistent_current_A`` is None where nothing is trapped and "unknown" where nobody logged it.
+    """
 
     field_T: Vector = ZERO
     mode: CoilMode = CoilMode.ZERO

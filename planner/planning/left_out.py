@@ -13,7 +13,7 @@ def left_out(compiled: Compiled, result: Result) -> tuple[LeftOut, ...]:
     return (*impossible, *_without_room(compiled, result))
 
 
-def _without_room(compiled: Compiled, result: Result) -> list[LeftOut]:
+def _without_room(_compiled: Compiled, _result: Result) -> list[LeftOut]:
     return []
 
 

@@ -17,7 +17,7 @@ from planner.runsheet.wording import HOUR_S, WallTimes
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
 
-WIDTH_IN, HEIGHT_IN = 10.0, 4.6
+WIDTH_IN, HEIGHT_IN = 10.0, 4.2
 # Shade and hatch of the users, in turn.
 LOOKS = (
     ("0.35", ""),

@@ -223,11 +223,25 @@ def _lines(context: Context, ask: Target, sweep: GateSweep | Map, field_T: float
                 state_at(context, field_T, kelvin_of(context.rig, ask), gates, persistent=persistent)
                 for gates in _line_ends(context, ask, sweep.gate, stops, second_ends)
             )
-            seconds = whole_seconds(total_s)
-            moving = Leg("gates", "gate sweep", 0, seconds, reason, gates_V=(before.gates_V, after.gates_V))
-            legs = (*held((), before.coil, seconds, reason), moving)
+            moving = _sweep_legs(
+                before.gates_V, after.gates_V, f"{context.sample(ask).name}/{sweep.gate}", stops, total_s, reason
+            )
+            legs = (*held((), before.coil, end_of(moving), reason), *moving)
             found.append(alternative(context, ask, label, Way(names, before, after, legs, reason)))
     return found
+
+
+def _sweep_legs(
+    before: Gates, after: Gates, gate: str, stops: tuple[float, ...], total_s: float, reason: str
+) -> tuple[Leg, ...]:
+    """A leg a direction. With a second gate the legs stand for all lines together: it moves on in the last one."""
+    whole = whole_seconds(total_s)
+    if len(stops) == 2:
+        return (Leg("gates", "gate sweep", 0, whole, reason, gates_V=(before, after)),)
+    turn = tuple((name, stops[1] if name == gate else volt) for name, volt in before)
+    half = whole // 2
+    there = Leg("gates", "gate sweep", 0, half, reason, gates_V=(before, turn))
+    return (there, Leg("gates", "gate sweep", half, whole, reason, gates_V=(turn, after)))
 
 
 def _line_ends(

@@ -1,0 +1,43 @@
+"""The families of rules. A new family is one module here and its name in the list below."""
+
+from planner.checks.rules import (
+    as_asked,
+    continuity,
+    field,
+    gates,
+    helium_book,
+    helium_lines,
+    lockin,
+    order,
+    people,
+    ramps,
+    slots,
+    sources,
+    stage,
+    supply,
+    switch,
+    transfers,
+    week_helium,
+    week_transfers,
+)
+
+__all__ = [
+    "as_asked",
+    "continuity",
+    "field",
+    "gates",
+    "helium_book",
+    "helium_lines",
+    "lockin",
+    "order",
+    "people",
+    "ramps",
+    "slots",
+    "sources",
+    "stage",
+    "supply",
+    "switch",
+    "transfers",
+    "week_helium",
+    "week_transfers",
+]

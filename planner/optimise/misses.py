@@ -1,0 +1,3 @@
+"""Why a take was left out."""
+
+from __future__ import annotations

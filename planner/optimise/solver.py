@@ -1,0 +1,209 @@
+"""The solve itself: first order, exact search if small, then annealing here and CP-SAT beside it."""
+
+from __future__ import annotations
+
+import threading
+import time
+from collections.abc import Callable
+
+from planner.optimise.bounds import Floors, cost_bound, floors, prize_bound
+from planner.optimise.builder import Builder
+from planner.optimise.compiled.warm import Compiled, Warmer, compile_all
+from planner.optimise.construct import construct
+from planner.optimise.exact import is_small, solve_exactly
+from planner.optimise.incumbent import Incumbent
+from planner.optimise.moves import Costs, static_costs
+from planner.optimise.problem import Problem
+from planner.optimise.result import Progress, Result, Stopped
+from planner.optimise.search import Annealer
+from planner.optimise.tables import Tables, build_tables
+
+CYCLES = (0.08, 0.32, 0.6)  # shares of the time that each cooling takes
+COLD = 0.004  # last temperature as a share of the first
+TRIALS_PER_SECOND = 6000  # work that stands for a second if the solve is to be reproducible
+
+
+class Solver:
+    """One solve: the parts it is made of and the state they share."""
+
+    def __init__(
+        self,
+        problem: Problem,
+        seconds: float,
+        seed: int,
+        on_progress: Callable[[Progress], None] | None,
+        stop: threading.Event | None,
+    ) -> None:
+        self.problem = problem
+        self.seconds = seconds
+        self.seed = seed
+        self.stop = stop if stop is not None else threading.Event()
+        self.warmer = Warmer()
+        self.tables: Tables = build_tables(problem)
+        self.costs: Costs = static_costs(self.tables)
+        self.floors: Floors = floors(problem, self.tables, self.costs)
+        self.incumbent = Incumbent(problem, self.tables, self.warmer.plain, on_progress)
+        self.deadline = self.incumbent.began + seconds
+
+    def asked(self) -> bool:
+        """Whether to stop was asked."""
+        return self.stop.is_set()
+
+    def late(self) -> bool:
+        """Whether to stop was asked or the time is used up."""
+        return self.stop.is_set() or time.perf_counter() >= self.deadline
+
+    def proven(self) -> bool:
+        """Whether nothing is left to do."""
+        return self.incumbent.exact or (self.incumbent.prize_proven and self.incumbent.cost_proven)
+
+    def begin(self, halt: Callable[[], bool]) -> None:
+        """First order and first bounds."""
+        self.incumbent.bound(prize=prize_bound(self.problem, self.floors))
+        builder = Builder(self.problem, self.tables, self.warmer.plain)
+        if construct(builder, self.costs, halt):
+            self.incumbent.offer(builder.items, "construction")
+        self.tighten()
+        self.incumbent.report()
+
+    def tighten(self) -> None:
+        """Static cost bound for the prize reached."""
+        objective = self.incumbent.objective
+        if objective is not None:
+            self.incumbent.bound(cost=cost_bound(self.problem, self.floors, objective.prize))
+
+    def exactly(self, halt: Callable[[], bool], *, compiled: bool) -> None:
+        """Exact search if the problem is small."""
+        if not is_small(self.problem, self.tables):
+            return
+        kernels = (lambda: Compiled) if compiled else (lambda: self.warmer.kernels)
+        if solve_exactly(self.problem, self.tables, self.floors, self.incumbent, kernels, halt):
+            self.incumbent.exact = True
+            objective = self.incumbent.objective
+            if objective is None or objective.missing > 0:
+                self.incumbent.proven_infeasible = True
+            if objective is not None:
+                self.incumbent.bound(prize=objective.prize if objective.missing == 0 else None)
+                self.incumbent.bound(cost=objective.cost)
+        self.incumbent.report()
+
+    def annealer(self) -> Annealer:
+        """A search that begins at the incumbent."""
+        annealer = Annealer(self.problem, self.tables, self.costs, self.seed, self.warmer.kernels)
+        annealer.restart(self.incumbent.best.order if self.incumbent.best is not None else ())
+        return annealer
+
+    def take_from(self, annealer: Annealer) -> None:
+        """Offer what the search found."""
+        if annealer.objective is not None and annealer.objective.better_than(self.incumbent.objective):
+            self.incumbent.offer(annealer.order, "annealing")
+
+    def anneal_for_time(self) -> None:
+        """Cool three times, longer each time, until the time is used up."""
+        annealer = self.annealer()
+        begin = time.perf_counter()
+        whole = max(self.deadline - begin, 1e-3)
+        finish = begin
+        for share in CYCLES:
+            start, finish = finish, finish + share * whole
+            while not self.late() and not self.proven() and (now := time.perf_counter()) < finish:
+                annealer.kernels = self.warmer.kernels
+                warm = COLD ** ((now - start) / (finish - start))
+                if annealer.piece(warm, warm, finish - now):
+                    self.take_from(annealer)
+                elif self.incumbent.objective is not None and self.incumbent.objective.better_than(annealer.objective):
+                    assert self.incumbent.best is not None
+                    annealer.restart(self.incumbent.best.order)
+                self.incumbent.report()
+            if self.incumbent.best is not None:
+                annealer.restart(self.incumbent.best.order)
+
+    def anneal_for_work(self, trials: int) -> None:
+        """Cool once in a fixed number of trials."""
+        annealer = self.annealer()
+        annealer.kernels = Compiled
+        piece = 200
+        for done in range(0, trials, piece):
+            if self.asked() or self.proven():
+                break
+            if annealer.run(piece, COLD ** (done / trials), COLD ** ((done + piece) / trials)):
+                self.take_from(annealer)
+            self.incumbent.report()
+
+    def result(self, stopped: Stopped) -> Result:
+        """What is known now."""
+        best = self.incumbent.best
+        objective = self.incumbent.objective
+        done = {take for node in best.order for take in self.problem.covers[node]} if best is not None else set()
+        left = tuple(take for take in range(self.problem.takes) if take not in done)
+        return Result(
+            order=best.order if best is not None else (),
+            feasible=objective is not None and objective.missing == 0,
+            objective=objective,
+            trace=best.trace if best is not None else (),
+            prize_bound=self.incumbent.prize_bound,
+            cost_bound=self.incumbent.cost_bound,
+            prize_proven=self.incumbent.prize_proven,
+            cost_proven=self.incumbent.cost_proven,
+            proven_infeasible=self.incumbent.proven_infeasible,
+            stopped=Stopped.PROVEN if self.proven() else stopped,
+            left_out=left,
+            missing_musts=tuple(take for take in left if self.problem.must[take]),
+            elapsed_s=self.incumbent.elapsed_s,
+            first_feasible_s=next((e.elapsed_s for e in self.incumbent.events if not e.objective.missing), None),
+            events=tuple(self.incumbent.events),
+        )
+
+
+def solve(
+    problem: Problem,
+    *,
+    seconds: float = 30.0,
+    seed: int = 0,
+    reproducible: bool = False,
+    on_progress: Callable[[Progress], None] | None = None,
+    stop: threading.Event | None = None,
+) -> Result:
+    """Find the best order of ``problem`` within ``seconds`` and bound how much better any other can be.
+
+    Parameters
+    ----------
+    seed
+        Of the search; the same seed gives the same order only if ``reproducible``.
+    reproducible
+        Stop on a count of work that stands for ``seconds``, not on the clock, and use one thread.
+    on_progress
+        Called in the caller's thread when the best order changes and about every 0.25 s.
+    stop
+        Set it from anywhere to have the best order so far.
+
+    Raises
+    ------
+    ValueError
+        If the problem's tables do not fit each other.
+    """
+    solver = Solver(problem, seconds, seed, on_progress, stop)
+    try:
+        return _reproducibly(solver) if reproducible else _by_the_clock(solver)
+    finally:
+        solver.warmer.close()
+
+
+def _by_the_clock(solver: Solver) -> Result:
+    solver.begin(solver.late)
+    solver.exactly(solver.late, compiled=False)
+    if not solver.proven() and not solver.late():
+        solver.anneal_for_time()
+    solver.tighten()
+    return solver.result(Stopped.ASKED if solver.asked() else Stopped.TIME)
+
+
+def _reproducibly(solver: Solver) -> Result:
+    compile_all()
+    solver.begin(solver.asked)
+    solver.exactly(solver.asked, compiled=True)
+    work = int(solver.seconds * TRIALS_PER_SECOND)
+    if not solver.proven():
+        solver.anneal_for_work(work)
+    solver.tighten()
+    return solver.result(Stopped.ASKED if solver.asked() else Stopped.WORK)

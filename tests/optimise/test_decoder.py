@@ -1,0 +1,55 @@
+"""The decoder says of every order what an independent simulator says of it, compiled or not."""
+
+from __future__ import annotations
+
+import numpy as np
+import pytest
+
+from planner.optimise import evaluate
+from planner.optimise.problem import Problem
+from tests.optimise.brute import CannotError, Now, read
+from tests.optimise.problems import random_problem
+
+
+def random_order(problem: Problem, rng: np.random.Generator) -> list[int]:
+    """Some nodes, each once or twice in a hundred cases wrongly repeated, in any order."""
+    nodes = np.arange(2, problem.nodes)
+    count = int(rng.integers(0, len(nodes) + 1))
+    order = rng.permutation(nodes)[:count].tolist()
+    if order and rng.random() < 0.1:
+        order.append(order[0])
+    return order
+
+
+def simulate(problem: Problem, order: list[int]) -> tuple[float, int, Now] | None:
+    try:
+        return read(problem, order)
+    except CannotError:
+        return None
+
+
+@pytest.mark.parametrize("seed", range(60))
+def test_every_random_order_reads_as_the_simulator_reads_it(seed: int) -> None:
+    problem = random_problem(seed, takes=4)
+    rng = np.random.default_rng(1000 + seed)
+    for _ in range(25):
+        order = random_order(problem, rng)
+        # shorten until it can be done, so that many feasible ones are compared too
+        while True:
+            expected = simulate(problem, order)
+            got = evaluate(problem, order)
+            assert (got.objective is not None) == (expected is not None), (seed, order, got.obstacle)
+            if expected is not None or not order:
+                break
+            order = order[:-1]
+        if expected is None:
+            continue
+        cost, end, now = expected
+        assert got.objective is not None
+        assert got.objective.cost == pytest.approx(cost, abs=1e-6)
+        assert got.objective.end == end
+        blocks = [block for step in got.trace for block in step.blocks]
+        assert [block.start for block in blocks] == now.starts
+        np.testing.assert_allclose([block.before for block in blocks], np.reshape(now.levels, (len(blocks), -1)), atol=1e-7)
+        pours = [step.poured for step in got.trace if problem.services.refill_reservoir[step.node] >= 0]
+        np.testing.assert_allclose(pours, now.poured, atol=1e-7)
