@@ -9,13 +9,9 @@ from planner.plan import CoilMode, Leg
 
 def heater_on(leg: Leg) -> bool:
     """Whether the switch is open, or warming, all through a coil leg."""
-    if leg.action == "heater on":
-        return True
     if leg.coil is None or leg.action == "heater off":
         return False
-    before, after = leg.coil
-    moves = before.field_T != after.field_T
-    return before.mode is CoilMode.DRIVEN or (moves and after.mode is CoilMode.DRIVEN)
+    return CoilMode.DRIVEN in (leg.coil[0].mode, leg.coil[1].mode)
 
 
 def mean_size(first: float, last: float) -> float:

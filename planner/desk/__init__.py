@@ -1,7 +1,6 @@
 """What both faces call: open, plan, check, write."""
 
 from planner.desk.desk import (
-    Progress,
     changed_files,
     check_plan_file,
     check_week_file,
@@ -12,6 +11,7 @@ from planner.desk.desk import (
     sheet_formats,
     write_sheets,
 )
+from planner.planning import Progress
 
 __all__ = [
     "Progress",

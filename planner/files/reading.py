@@ -189,6 +189,8 @@ def _fit_problems(week: Week, rig: Rig, file: str) -> list[Problem]:
             problems.append(Problem(file, "present.level", f"{week.present.level_percent:g} %", expected))
     if rig.magnet.switch is None and week.present.coil == "persistent":
         problems.append(Problem(file, "present.coil", '"persistent"', "this rig has no persistent switch"))
+    if rig.magnet.switch is None and week.wanted_end.coil == "persistent":
+        problems.append(Problem(file, "wanted_end.coil", '"persistent"', "this rig has no persistent switch"))
     return [*problems, *_pace_problems(week, file)]
 
 

@@ -58,4 +58,5 @@ def end_state(week: Week, rig: Rig) -> State:
     """The rig as the week shall end: gates at rest."""
     stage = Stage(temperature_of(rig, week.wanted_end.temperature_K), charge_of(rig))
     light = tuple((sample.name, "dark") for sample in week.samples)
-    return State(driven_coil(rig, float(week.wanted_end.field_T)), stage, resting_gates(week), light)
+    coil_at = persistent_coil if week.wanted_end.coil == "persistent" else driven_coil
+    return State(coil_at(rig, float(week.wanted_end.field_T)), stage, resting_gates(week), light)

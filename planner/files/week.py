@@ -136,9 +136,10 @@ class Present(Table):
 
 
 class WantedEnd(Table):
-    """The rig as the week shall end. The coil carries no current at zero field and is driven elsewhere."""
+    """The rig as the week shall end. At a field the coil is driven unless it shall be left persistent, leads down."""
 
     field_T: Tesla = 0.0
+    coil: Literal["driven", "persistent"] = "driven"
     temperature_K: KelvinOrBase = "base"
 
 

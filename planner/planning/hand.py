@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from planner.optimise.problem import Problem
-from planner.optimise.result import Evaluation, Result, TraceStep
+from planner.optimise.result import Evaluation, Result, TraceBlock, TraceStep, TraceWait
 from planner.plan import HandOrder
 from planner.planning.compile import HELIUM, Compiled
 
@@ -70,7 +70,7 @@ def _spent(compiled: Compiled, trace: Sequence[TraceStep]) -> tuple[int, float]:
     if not len(problem.reservoirs.level):
         return moving_s, 0.0
     services = problem.services
-    parts = [part for step in trace for part in (*step.blocks, *step.waits)]
+    parts: list[TraceBlock | TraceWait] = [part for step in trace for part in (*step.blocks, *step.waits)]
     begin = float(problem.reservoirs.level[HELIUM])
     end = float(max(parts, key=lambda part: (part.start + part.seconds, part.start)).after[HELIUM]) if parts else begin
     fills = [(step.node, step.poured) for step in trace if step.poured > 0]

@@ -47,17 +47,7 @@ def write_sheets(
     InputError
         If a format is unknown, the plan's own week or rig cannot be read, or a file cannot be written.
     """
-    unknown = [name for name in formats if name not in FORMATS]
-    if unknown:
-        known = list(FORMATS)
-        raise InputError(
-            [
-                Problem(
-                    "sheet", "format", f'"{name[:40]}"', f"expected one of {', '.join(known)}", nearest(name, known)
-                )
-                for name in unknown
-            ]
-        )
+    _known_formats(formats)
     sheet = Sheet.of(plan, review=review)
     if not review:
         refuse_unless_runnable(plan, sheet.rig)
@@ -69,6 +59,16 @@ def write_sheets(
     except OSError as error:
         problem = Problem(str(folder), "", "", f"the sheet cannot be written: {error.strerror}")
         raise InputError([problem]) from error
+
+
+def _known_formats(formats: Sequence[str]) -> None:
+    known = list(FORMATS)
+    expected = f"expected one of {', '.join(known)}"
+    unknown = [name for name in formats if name not in FORMATS]
+    if unknown:
+        raise InputError(
+            [Problem("sheet", "format", f'"{name[:40]}"', expected, nearest(name, known)) for name in unknown]
+        )
 
 
 def file_stem(title: str) -> str:

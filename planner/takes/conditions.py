@@ -58,7 +58,8 @@ def field_of(ask: Target, sample: Sample, field_T: float | None, filling: float 
     if density == 0:
         raise CannotError(f"ν = {filling_name(filling)}: the gates leave {sample.name} without carriers")
     field = float(field_for_filling_T(density, filling))
-    spread = abs(field) * sample.density_error_percent / 100
+    uncertain_per_m2 = sample.density_per_m2 * sample.density_error_percent / 100  # the gates' part counts as known
+    spread = abs(float(field_for_filling_T(uncertain_per_m2, filling))) if uncertain_per_m2 else 0.0
     return FieldAsk(field, field - spread, field + spread, f"ν = {filling_name(filling)}")
 
 

@@ -66,7 +66,9 @@ class Writer:
 
     def leg(self, action: str, seconds: int, before: Coil, after: Coil, rate: float | None = None) -> Leg:
         """A coil leg with its litres, beginning at 0."""
-        return Leg("coil", action, 0, seconds, "by hand", self.burn(action, seconds, before, after), rate, (before, after))
+        return Leg(
+            "coil", action, 0, seconds, "by hand", self.burn(action, seconds, before, after), rate, (before, after)
+        )
 
     def burn(self, action: str, seconds: int, before: Coil, after: Coil) -> float:
         """Litres, by the rule book: static, switch heater, leads by their mean current, tesla moved."""
@@ -139,7 +141,9 @@ class Writer:
         if second > self.now:
             self.write(StepKind.WAIT, "wait", [self.still(second - self.now)])
 
-    def ramp(self, stops: Iterable[float], rates: Iterable[float], settle: int = 0, beside: list[Leg] | None = None) -> None:
+    def ramp(
+        self, stops: Iterable[float], rates: Iterable[float], settle: int = 0, beside: list[Leg] | None = None
+    ) -> None:
         """A move from stop to stop."""
         legs = self.ramp_legs(stops, rates)
         last = legs[-1].coil
@@ -201,7 +205,9 @@ class Writer:
         )  # fmt: skip
 
 
-def gates_leg(start: int, end: int, before: dict[str, float], after: dict[str, float], action: str = "gate ramp") -> Leg:
+def gates_leg(
+    start: int, end: int, before: dict[str, float], after: dict[str, float], action: str = "gate ramp"
+) -> Leg:
     """A leg of gates, times in its step."""
     pair = (tuple(sorted(before.items())), tuple(sorted(after.items())))
     return Leg("gates", action, start, end, "by hand", gates_V=pair)
@@ -239,7 +245,28 @@ def leg_of(step: Step, action: str, edit: Callable[[Leg], Leg]) -> Step:
     legs, done = [], False
     for leg in step.legs:
         if leg.action == action and not done:
-            leg, done = edit(leg), True  # noqa: PLW2901
+            leg, done = edit(leg), True
         legs.append(leg)
     assert done, (action, [leg.action for leg in step.legs])
     return replace(step, legs=tuple(legs))
+
+
+def rebooked(asked: Request, plan: Plan) -> Plan:
+    """The plan with litres and levels worked out again after its legs were edited."""
+    book = Writer(asked)
+    steps = []
+    litres = book.litres
+    for step in plan.steps:
+        legs: list[Leg] = []
+        for leg in step.legs:
+            if leg.coil is None:
+                legs.append(leg)
+                continue
+            spent = book.burn(leg.action, leg.seconds, *leg.coil)
+            if step.service == "helium transfer" and asked.rig.bath is not None:
+                spent -= asked.rig.bath.losses.static_L_per_s * leg.seconds
+            legs.append(replace(leg, litres=spent))
+        left = None if litres is None else litres - sum(leg.litres for leg in legs) + step.poured_L
+        steps.append(replace(step, legs=tuple(legs), helium_before_L=litres, helium_after_L=left))
+        litres = left
+    return replace(plan, steps=tuple(steps))

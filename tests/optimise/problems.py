@@ -98,9 +98,11 @@ def random_problem(seed: int, shape: Shape | None = None, takes: int = 4) -> Pro
     node = _BlockTable((N,), 3, R)
     source = R - 1 if shape.source else -1
     waiting = int(shape.source)
-    base = rng.uniform(0.002, 0.01, size=(P, R)) if not shape.week else rng.uniform(1e-5, 2e-5, size=(P, R))
+    base = rng.uniform(0.001, 0.006, size=(P, R)) if not shape.week else rng.uniform(1e-5, 2e-5, size=(P, R))
     if shape.week:
         base[:, 1:] *= 0.2
+    else:
+        base[:, 0] *= rng.choice([0.5, 1.0, 3.0])
     light = 0.1 if shape.week else 1.0
     place_rate = base * rng.choice([1.0, 1.0, 2.5], size=(P, 1))
     if waiting:
@@ -118,7 +120,7 @@ def random_problem(seed: int, shape: Shape | None = None, takes: int = 4) -> Pro
             arcs.count[a, b] = count
             for k in range(count):
                 arcs.seconds[a, b, k] = int(rng.integers(2, 25)) * scale
-                arcs.calendar[a, b, k] = int(rng.choice([0, 0, 0, 1, 2]))
+                arcs.calendar[a, b, k] = int(rng.choice([0, 0, -1, 1, 2]))
                 arcs.rates["use"][a, b, k] = light * rng.uniform(0, 0.3, R)
                 arcs.rates["wait_rate"][a, b, k] = rng.choice([0.5, 1.0, 3.0]) * base[a]
                 if rng.random() < 0.3:
@@ -130,12 +132,12 @@ def random_problem(seed: int, shape: Shape | None = None, takes: int = 4) -> Pro
     musts = np.zeros(shape.takes, dtype=np.bool_)
     musts[rng.permutation(shape.takes)[: shape.musts]] = True
     pairs = {tuple(sorted(rng.choice(shape.takes, 2, replace=False).tolist())) for _ in range(shape.precedences if shape.takes > 1 else 0)}
-    level = rng.uniform(7.0 if shape.week else 2.0, full, R)
+    level = rng.uniform(7.0 if shape.week else 4.0, full, R)
     price = np.full(R, 15.0 * scale)
     arrivals: tuple[list[int], list[int], list[float]] = ([], [], [])
     if shape.source:
         price[-1] = 0.0
-        level[-1] = rng.uniform(1.0, 12.0)
+        level[-1] = rng.uniform(0.0, 10.0)
         for second in sorted(rng.integers(0, horizon, size=2).tolist()):
             arrivals[0].append(source)
             arrivals[1].append(second)
@@ -202,7 +204,7 @@ def _fill_node(
     node.count[n] = count
     for k in range(count):
         node.seconds[n, k] = int(rng.integers(5, 25)) * scale * (3 if shape.week and not service else 1)
-        node.calendar[n, k] = int(rng.choice([0, 0, 1, 2, 3])) if not service else int(rng.choice([0, 1]))
+        node.calendar[n, k] = int(rng.choice([0, -1, 1, 2, 3])) if not service else int(rng.choice([-1, 1]))
         node.rates["use"][n, k] = (0.05 if shape.week else 1.0) * rng.uniform(0, 0.5, R)
         node.rates["wait_rate"][n, k] = (0.002 if shape.week else 1.0) * rng.uniform(0.002, 0.03, R)
         if shape.chains:

@@ -12,12 +12,21 @@ from tests.optimise.problems import random_problem
 
 
 def random_order(problem: Problem, rng: np.random.Generator) -> list[int]:
-    """Some nodes, each once or twice in a hundred cases wrongly repeated, in any order."""
-    nodes = np.arange(2, problem.nodes)
-    count = int(rng.integers(0, len(nodes) + 1))
-    order = rng.permutation(nodes)[:count].tolist()
-    if order and rng.random() < 0.1:
-        order.append(order[0])
+    """One node for each of some takes, services between them; now and then any nodes at all."""
+    if rng.random() < 0.2:
+        nodes = np.arange(2, problem.nodes)
+        order = rng.permutation(nodes)[: rng.integers(0, len(nodes) + 1)].tolist()
+        return order + order[:1]
+    takes = rng.permutation(problem.takes).tolist()
+    before = [(a, b) for a, b in problem.before_after.tolist()]
+    takes.sort(key=lambda take: sum(b == take for _, b in before))
+    order = []
+    for take in takes[: rng.integers(0, problem.takes + 1)]:
+        if all(take not in problem.covers[node] for node in order):
+            order.append(int(rng.choice([n for n in range(problem.nodes) if take in problem.covers[n]])))
+    for node in range(2, problem.nodes):
+        if not problem.covers[node] and rng.random() < 0.6:
+            order.insert(int(rng.integers(0, len(order) + 1)), node)
     return order
 
 
@@ -50,6 +59,7 @@ def test_every_random_order_reads_as_the_simulator_reads_it(seed: int) -> None:
         assert got.objective.end == end
         blocks = [block for step in got.trace for block in step.blocks]
         assert [block.start for block in blocks] == now.starts
-        np.testing.assert_allclose([block.before for block in blocks], np.reshape(now.levels, (len(blocks), -1)), atol=1e-7)
+        for block, level in zip(blocks, now.levels, strict=True):
+            np.testing.assert_allclose(block.before, level, atol=1e-7)
         pours = [step.poured for step in got.trace if problem.services.refill_reservoir[step.node] >= 0]
         np.testing.assert_allclose(pours, now.poured, atol=1e-7)

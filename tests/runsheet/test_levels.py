@@ -8,7 +8,7 @@ import pytest
 
 from planner.plan import Plan
 from planner.runsheet.levels import floor_of, gauge_percent, litres_over_time
-from tests.runsheet.plans import DRY, Builder, week_text
+from tests.runsheet.builder import DRY, Builder, week_text
 
 
 def floor(build: Builder) -> tuple[float, str, float, str]:

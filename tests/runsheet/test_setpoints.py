@@ -5,7 +5,7 @@ from __future__ import annotations
 from planner.plan import Coil, CoilMode, Leg, Plan, along_z
 from planner.runsheet.setpoints import coil_set_points, gate_lines, joined, mode_change
 from planner.runsheet.wording import WallTimes
-from tests.runsheet.plans import Builder
+from tests.runsheet.builder import Builder
 
 
 def points(build: Builder, at: int = -1) -> list[tuple[str, str, str]]:

@@ -17,7 +17,8 @@ from planner.runsheet.rows import shown_steps
 from planner.runsheet.sheet import Sheet
 from planner.runsheet.sheet_html import write
 from planner.runsheet.wording import clean
-from tests.runsheet.plans import HOSTILE, WET, Builder, clock_change_plan, dry_plan, week_text
+from tests.runsheet.builder import WET, Builder, week_text
+from tests.runsheet.plans import HOSTILE, clock_change_plan, dry_plan
 
 VOID = {"meta", "br", "img", "link", "input", "hr"}
 

@@ -94,8 +94,10 @@ def _ends(item: Placed) -> Instants:
     return ((item.leg.start_s, item.before_L), (item.leg.end_s, item.after_L))
 
 
-def _start_of_rise(item: Placed, _: Placed | None) -> Instants:
-    return ((item.leg.start_s, item.before_L),) if item.rises else ()
+def _start_of_rise(item: Placed, previous: Placed | None) -> Instants:
+    """A ramp to higher field starts with the first of its legs that rise; the next rate goes on with the same ramp."""
+    goes_on = previous is not None and previous.rises
+    return ((item.leg.start_s, item.before_L),) if item.rises and not goes_on else ()
 
 
 def _while_at_field(item: Placed, previous: Placed | None) -> Instants:

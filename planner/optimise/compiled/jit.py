@@ -7,6 +7,7 @@ go unnoticed; the stamp used here is therefore a digest of all kernel files.
 from __future__ import annotations
 
 import hashlib
+import importlib
 import types
 from collections.abc import Callable
 from pathlib import Path
@@ -60,6 +61,8 @@ class Plain:
     visits = 40  # of `branch` in a piece of about 0.05 s
 
     def __init__(self) -> None:
+        for module in ("anneal", "branch"):  # these two import all others
+            importlib.import_module(f"planner.optimise.compiled.{module}")
         names: dict[str, Any] = {}
         for compiled in _KERNELS.values():
             names.update({key: value for key, value in compiled.py_func.__globals__.items() if key not in names})
