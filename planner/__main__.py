@@ -1,6 +1,6 @@
 """``python -m planner`` is the command ``fridgeweek``."""
 
-from planner.cli import main
+from planner.entry import main
 
 if __name__ == "__main__":
     main()

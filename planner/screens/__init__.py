@@ -1,0 +1,1 @@
+"""The terminal screens; no logic of their own."""
