@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from datetime import datetime, time
-from itertools import combinations, pairwise
+from itertools import pairwise
 from zoneinfo import ZoneInfo
 
 from hypothesis import given
@@ -75,7 +75,7 @@ WORKDAYS = frozenset(range(5))
 
 def test_office_hours_are_cut_at_start_and_end() -> None:
     hours = weekly(MONDAY, 2 * DAY, WORKDAYS, time(8), time(18))
-    # Monday 08:30 is second 0; 18:00 is 9.5 h later; Tuesday 08:00 is 23.5 h, 18:00 is 33.5 h; Wednesday 08:00 is 47.5 h
+    # from Monday 08:30: Monday 18:00 is 9.5 h, Tuesday 08:00 is 23.5 h and 18:00 33.5 h, Wednesday 08:00 is 47.5 h
     assert hours == ((0, 34200), (84600, 120600), (171000, 172800))
 
 

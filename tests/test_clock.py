@@ -102,7 +102,7 @@ def test_times_as_files_write_them(written: datetime | str, moment: datetime) ->
 
 @pytest.mark.parametrize("written", ["", "Tue", "20:00", "Tue 24:00", "Tue 20:60", "2031-03-04", "2031-02-30T08:00"])
 def test_what_is_no_time(written: str) -> None:
-    with pytest.raises(ValueError, match="^expected a "):
+    with pytest.raises(ValueError, match=r"^expected a "):
         MONDAY.read(written)
 
 

@@ -87,7 +87,7 @@ def test_text_becomes_a_number_in_the_fixed_unit(text: str, unit: str, value: fl
     ],
 )
 def test_what_is_no_quantity_says_what_was_expected(written: object, unit: str, says: str) -> None:
-    with pytest.raises(ValueError, match="^expected a quantity such as ") as caught:
+    with pytest.raises(ValueError, match=r"^expected a quantity such as ") as caught:
         parse_amount(written, unit)
     assert says in str(caught.value)
 
@@ -132,11 +132,11 @@ def test_bounds_name_the_limit_and_its_unit() -> None:
     assert rate.parse("0.06 T/min") == pytest.approx(0.001)
     assert share.parse("0 %") == 0
     assert share.parse("100 %") == 100
-    with pytest.raises(ValueError, match="^must be more than 0 T/s$"):
+    with pytest.raises(ValueError, match=r"^must be more than 0 T/s$"):
         rate.parse("0 T/min")
-    with pytest.raises(ValueError, match="^must be at least 0 percent$"):
+    with pytest.raises(ValueError, match=r"^must be at least 0 percent$"):
         share.parse("-1 %")
-    with pytest.raises(ValueError, match="^must be at most 100 percent$"):
+    with pytest.raises(ValueError, match=r"^must be at most 100 percent$"):
         share.parse("101 %")
 
 
@@ -152,5 +152,5 @@ def test_a_word_may_stand_for_a_quantity_where_the_field_says_so() -> None:
     kelvin = In("K", above=0, word="base")
     assert kelvin.parse("base") == "base"
     assert kelvin.parse("50 mK") == 0.05
-    with pytest.raises(ValueError, match='^expected a quantity such as "42 mK"; or the word "base"$'):
+    with pytest.raises(ValueError, match=r'^expected a quantity such as "42 mK"; or the word "base"$'):
         kelvin.parse("basement")

@@ -123,6 +123,7 @@ class GateSweep(AtOneField):
             raise ValueError("a second gate needs `second_gate`, `second_sweep` and `second_points`")
         if self.second_gate == self.gate:
             raise ValueError("second_gate: must be another gate")
+        _none_held(self, self.gate, self.second_gate)
         return self
 
 
@@ -159,7 +160,14 @@ class Map(Target):
             raise ValueError("expected one of `field`, `filling`, `fields` and `fillings`")
         if (given[0] or given[1]) != (self.rungs is not None):
             raise ValueError("`rungs` goes with a range of field or filling, and is needed there")
+        _none_held(self, self.gate)
         return self
+
+
+def _none_held(target: Target, *swept: str | None) -> None:
+    for name in swept:
+        if name in target.gates:
+            raise ValueError(f"gates.{name}: this gate is swept, so it cannot be held as well")
 
 
 class OtherWork(Target):

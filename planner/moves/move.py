@@ -63,22 +63,18 @@ def change(setup: Setup, lines: Lines, before: State, after: State) -> Stretch |
         "temperature": _stage_legs(setup, before, after),
         "gates": _gate_legs(setup, before.gates_V, after.gates_V),
     }
-    at, last = 0, 0
+    last = 0
     placed: dict[str, tuple[Leg, ...]] = {}
     for name in sorted(channels, key=lambda channel: channel not in together):
-        begins = 0 if name in together else last
-        placed[name] = delayed(channels[name], begins)
-        last = max(last, begins, end_of(placed[name]))
-        if name == "field" and coil_legs and ramped:
-            back = _settle_stage(setup, after, begins + ramped)
-            placed["stage"] = back
-            last = max(last, end_of(back))
-    at = last
+        placed[name] = delayed(channels[name], 0 if name in together else last)
+        last = max(last, end_of(placed[name]))
+    back = _settle_stage(setup, after, placed["field"], end_of(placed["temperature"])) if ramped else ()
+    at = max(last, end_of(back))
     if at == 0:
         return None
     lead_in = held((), before.coil, placed["field"][0].start_s, "field follows") if placed["field"] else ()
     legs = held((*lead_in, *placed["field"]), after.coil, at, "held while the rest changes")
-    beside = (*placed["temperature"], *placed.get("stage", ()), *placed["gates"])
+    beside = (*placed["temperature"], *back, *placed["gates"])
     label = "ramp" if ramped else "change"
     return stretch(lines, label, before, after, (*legs, *beside), pace=_pace((*legs, *beside), at))
 
@@ -119,13 +115,15 @@ def _stage_legs(setup: Setup, before: State, after: State) -> tuple[Leg, ...]:
     return (Leg("stage", action, 0, seconds, reason, stage_K=(from_K, to_K)),)
 
 
-def _settle_stage(setup: Setup, after: State, begins: int) -> tuple[Leg, ...]:
+def _settle_stage(setup: Setup, after: State, field: tuple[Leg, ...], changed_s: int) -> tuple[Leg, ...]:
+    """What is left of the stage's settling after the last ramp once its own change of temperature is over."""
     wanted_K = after.stage.temperature_K
-    seconds = after_ramp_seconds(setup.rig.stage, wanted_K)
-    if seconds == 0:
+    ramped_s = max(leg.end_s for leg in field if leg.action != "settle")
+    begins, settled = max(ramped_s, changed_s), ramped_s + after_ramp_seconds(setup.rig.stage, wanted_K)
+    if settled <= begins:
         return ()
     reason = "stage settles after the ramp"
-    return (Leg("stage", "settle stage", begins, begins + seconds, reason, stage_K=(wanted_K, wanted_K)),)
+    return (Leg("stage", "settle stage", begins, settled, reason, stage_K=(wanted_K, wanted_K)),)
 
 
 def gate_seconds(setup: Setup, before: Gates, after: Gates) -> int:

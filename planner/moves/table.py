@@ -103,11 +103,12 @@ def _switch_stretches(
 
 @dataclass(frozen=True)
 class _Ramps:
-    """Straight ramps between unique fields: seconds, litres, and the litres used before the first rising leg."""
+    """Straight ramps between unique fields: seconds, litres, those used before the first rising leg, reversals."""
 
     seconds: Ints
     litres: Floats
     litres_before_rise: Floats
+    reverses: Bools
 
 
 def _ramps(setup: Setup, fields_T: Floats) -> _Ramps:
@@ -131,7 +132,7 @@ def _ramps(setup: Setup, fields_T: Floats) -> _Ramps:
     turns = (begin < 0) != (finish < 0) if rig.magnet.supply.polarity == "unipolar" else np.zeros_like(seconds, bool)
     reversal = np.where(turns, whole_seconds(rig.magnet.supply.reversal_s), 0)
     turned = _coil_litres(setup, reversal, np.zeros(seconds.shape), np.zeros(seconds.shape))
-    return _Ramps(seconds + reversal, litres + turned, falling_litres + turned)
+    return _Ramps(seconds + reversal, litres + turned, falling_litres + turned, reversal > 0)
 
 
 def _coil_litres(setup: Setup, seconds: Ints, mean_T: Floats, moved_T: Floats) -> Floats:
@@ -184,7 +185,7 @@ def _changes(
     stay = np.array([lines.stay_L(state.coil) for state in states])
     ends_falling = moved & (np.abs(places.field_T)[None, :] < np.abs(places.field_T)[:, None]) & ~_crosses(places)
     rises = moved & ~ends_falling
-    quiet_end = ends_falling & (settle == 0) & (held_s == 0)
+    quiet_end = ends_falling & (settle == 0) & (held_s == 0) & ~ramps.reverses[pick]
     least = np.where(quiet_end, 0.0, stay[None, :] + litres)
     before_rise = lead_in_L + warm_L + np.where(moved, ramps.litres_before_rise[pick], 0.0)
     least = np.where(rises, np.maximum(least, lines.start_ramp_L + before_rise), least)
@@ -226,8 +227,8 @@ def _together(
         last = np.maximum(last, np.where(channels[name] > 0, begins + channels[name], 0))
         if name == "field":
             lead_in = np.where(field_s > 0, begins, 0)
-            last = np.maximum(last, np.where((ramped_s > 0) & (back_s > 0), begins + ramped_s + back_s, 0))
-    return last, lead_in
+    settled = np.where((ramped_s > 0) & (back_s > 0), lead_in + ramped_s + back_s, 0)
+    return np.maximum(last, settled), lead_in
 
 
 @dataclass(frozen=True)

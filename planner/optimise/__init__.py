@@ -12,9 +12,9 @@ from planner.optimise.problem import Blocks, Calendars, Problem, Reservoirs, Ser
 from planner.optimise.result import Evaluation, Failure, Objective, Obstacle, Progress, Result, Stopped
 
 if TYPE_CHECKING:
-    from planner.optimise.reading import evaluate
-    from planner.optimise.misses import Miss, explain
     from planner.optimise.hand_order import follow
+    from planner.optimise.misses import Miss, explain
+    from planner.optimise.reading import evaluate
     from planner.optimise.solver import solve
 
 __all__ = [

@@ -1,4 +1,4 @@
-"""An order that grows and shrinks at its end, with the state before each item: what construction and following share."""
+"""An order that grows and shrinks at its end, with the state before each item; for construction and hand orders."""
 
 from __future__ import annotations
 
@@ -44,7 +44,7 @@ class Builder:
     @property
     def time(self) -> int:
         """Second at which the order so far ends."""
-        return int(self.states.count[len(self.items), TIME])
+        return int(self.states.state[len(self.items), TIME])
 
     @property
     def done(self) -> set[int]:
@@ -54,14 +54,14 @@ class Builder:
     @property
     def earned(self) -> tuple[int, int]:
         """Musts done and prize so far."""
-        row = self.states.count[len(self.items)]
+        row = self.states.state[len(self.items)]
         return int(row[MUSTS]), int(row[EARNED])
 
     def push(self, node: int) -> int:
         """Append ``node`` if it can be done; the failure, or OK."""
         status = int(self.kernels.extend(self.tables, self.scratch, self.states, node, len(self.items), True))
         if status == OK:
-            self.states.count[len(self.items), KEPT] = 1
+            self.states.state[len(self.items), KEPT] = 1
             self.items.append(node)
         return status
 
@@ -74,7 +74,7 @@ class Builder:
     def finish(self) -> tuple[int, float, int]:
         """Failure (or OK), cost and second of going to the end from here."""
         here = len(self.items)
-        row = self.states.count[here]
+        row = self.states.state[here]
         status, end, cost = self.kernels.step(
             self.tables, self.scratch, Problem.END, row[PLACE], row[TIME], self.states.level, here
         )

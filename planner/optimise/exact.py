@@ -49,7 +49,12 @@ def solve_exactly(
         order, objective = incumbent.best.order, incumbent.objective
         state.order[1, : len(order)] = order
         state.length[1] = len(order)
-        state.value[1] = [objective.missing - int(problem.must.sum()), objective.minus_prize, objective.cost, objective.end]
+        state.value[1] = [
+            objective.missing - int(problem.must.sum()),
+            objective.minus_prize,
+            objective.cost,
+            objective.end,
+        ]
     done = False
     spent = 0
     while not done and spent < VISITS and not halt():

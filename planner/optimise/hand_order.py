@@ -8,8 +8,8 @@ from collections.abc import Set as AbstractSet
 from planner.optimise.builder import Builder
 from planner.optimise.compiled.jit import Plain
 from planner.optimise.compiled.step import LOW, OK
-from planner.optimise.reading import evaluate
 from planner.optimise.problem import Problem
+from planner.optimise.reading import evaluate
 from planner.optimise.result import Evaluation
 from planner.optimise.tables import build_tables
 
@@ -41,7 +41,7 @@ def follow(problem: Problem, preference: Sequence[int], *, only: AbstractSet[int
 def _append(builder: Builder, take: int, wanted: AbstractSet[int]) -> None:
     """Append the cheapest way of doing ``take``, if there is one."""
     covers = builder.problem.covers
-    nodes = [node for node, takes in enumerate(covers) if take in takes and wanted.issuperset(takes)]
+    nodes = [node for node, takes in enumerate(covers) if take in takes and set(takes) <= wanted]
     plain = [[node] for node in nodes]
     refilled = [[service, node] for node in nodes for service in builder.services]
     for choices, needed in ((plain, True), (refilled, False)):

@@ -8,9 +8,9 @@ import time
 from collections.abc import Callable, Sequence
 from typing import Any
 
-from planner.optimise.reading import evaluate
 from planner.optimise.problem import Problem
-from planner.optimise.result import Evaluation, Event, Failure, Objective, Progress, gap_of
+from planner.optimise.reading import evaluate
+from planner.optimise.result import Evaluation, Event, Objective, Progress, gap_of
 from planner.optimise.tables import Tables
 
 PROVEN_COST = 1e-6  # share of the cost within which bound and cost count as equal
@@ -52,8 +52,6 @@ class Incumbent:
         evaluation = evaluate(self.problem, order, tables=self._tables, kernels=self._plain)
         objective = evaluation.objective
         if objective is None:
-            if evaluation.obstacle is not None and evaluation.obstacle.failure is Failure.MUST:
-                raise AssertionError("an order that only misses a must has an objective")
             return False
         with self._lock:
             if not objective.better_than(self.objective):
@@ -97,5 +95,5 @@ class Incumbent:
             return
         self._reported = (self.version, self.elapsed_s)
         gap = gap_of(self.objective, self.prize_bound, self.cost_bound)
-        cost_bound = self.cost_bound
-        self._on_progress(Progress(self.objective, self.prize_bound, cost_bound, gap, self.elapsed_s))
+        progress = Progress(self.objective, self.prize_bound, self.cost_bound, gap, self.elapsed_s)
+        self._on_progress(progress)

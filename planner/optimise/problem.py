@@ -31,7 +31,8 @@ kept, with the levels the shifted times give), else the unshifted ones stand (an
 by more than ``TOLERANCE``.
 
 A place has waits of its own: ``place_wait_rate`` and ``place_wait_min`` hold after a node that ends in it, before
-the arc's first block, and after the last block of an arc that leads to it. On an arc without blocks the wait is that of the place left.
+the arc's first block, and after the last block of an arc that leads to it. On an arc without blocks the wait is
+that of the place left.
 
 An arrival counts from its second on and is not cut off at the capacity. Every service starts and ends in a place
 like any other node.
@@ -46,9 +47,10 @@ the source holds enough (for the whole if ``need_full``, else for ``min_pour``) 
 calendar. A reservoir that is then too full for ``min_pour`` is not waited for: the refill is infeasible there. Lengths
 are rounded up with a microsecond forgiven.
 
-**Feasible**: everything ends by ``horizon``; every level rule holds; the final wait in the end place until ``horizon``
-keeps its ``place_wait_min`` (also if it is zero seconds long); all ``must`` takes are done; precedences hold (``after`` is done only if ``before``
-was done by an earlier node); no take is done twice and no service more than ``max_uses`` times.
+**Feasible**: everything ends by ``horizon``; every level rule holds; the final wait in the end place until
+``horizon`` keeps its ``place_wait_min`` (also if it is zero seconds long); all ``must`` takes are done; precedences
+hold (``after`` is done only if ``before`` was done by an earlier node); no take is done twice and no service more
+than ``max_uses`` times.
 
 **Objective**, staged: most prize; then least ``cost = moving seconds + sum(price * used)``; then the earliest end.
 Moving seconds are the seconds of all arc blocks and of the nodes with ``moving``. Used is what waits, blocks and

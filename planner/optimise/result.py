@@ -157,8 +157,9 @@ class Result:
     """Outcome of a solve.
 
     ``feasible`` is False if the order misses a must (``missing_musts``) or if not even the end can be reached (then
-    ``objective`` is None); ``proven_infeasible`` says that no order does all musts. ``prize_bound`` is at least the prize of every order
-    that does as many musts, ``cost_bound`` at most the cost of every order with at least this prize.
+    ``objective`` is None); ``proven_infeasible`` says that no order does all musts. ``prize_bound`` is at least the
+    prize of every order that does all musts, ``cost_bound`` at most the cost of every such order that earns at least
+    as much as this one.
     """
 
     order: tuple[int, ...]

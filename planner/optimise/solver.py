@@ -5,6 +5,7 @@ from __future__ import annotations
 import threading
 import time
 from collections.abc import Callable
+from typing import TYPE_CHECKING
 
 from planner.optimise.bounds import Floors, cost_bound, floors, prize_bound
 from planner.optimise.builder import Builder
@@ -18,8 +19,12 @@ from planner.optimise.result import Progress, Result, Stopped
 from planner.optimise.search import Annealer
 from planner.optimise.tables import Tables, build_tables
 
+if TYPE_CHECKING:
+    from planner.optimise.cpsat.run import Relaxation
+
 CYCLES = (0.08, 0.32, 0.6)  # shares of the time that each cooling takes
 COLD = 0.004  # last temperature as a share of the first
+DETERMINISTIC_UNITS = 0.2  # of CP-SAT for each second of a reproducible solve
 TRIALS_PER_SECOND = 6000  # work that stands for a second if the solve is to be reproducible
 
 
@@ -98,7 +103,32 @@ class Solver:
         if annealer.objective is not None and annealer.objective.better_than(self.incumbent.objective):
             self.incumbent.offer(annealer.order, "annealing")
 
-    def anneal_for_time(self) -> None:
+    def relaxation(self, seconds: float, *, deterministic: bool) -> Relaxation:
+        """The CP-SAT model, not yet begun."""
+        from planner.optimise.cpsat.run import Relaxation
+
+        return Relaxation(
+            self.problem,
+            self.tables,
+            self.costs,
+            self.floors,
+            self.incumbent,
+            seconds=seconds,
+            seed=self.seed,
+            deterministic=deterministic,
+        )
+
+    def take_proposals(self, relaxation: Relaxation) -> None:
+        """Read what the relaxation proposes with the exact decoder, leaving out what cannot be done."""
+        for order in relaxation.proposals():
+            builder = Builder(self.problem, self.tables, self.warmer.plain)
+            builder.careful = False
+            for node in order:
+                builder.push(node)
+            if builder.close():
+                self.incumbent.offer(builder.items, "CP-SAT")
+
+    def anneal_for_time(self, relaxation: Relaxation) -> None:
         """Cool three times, longer each time, until the time is used up."""
         annealer = self.annealer()
         begin = time.perf_counter()
@@ -111,12 +141,30 @@ class Solver:
                 warm = COLD ** ((now - start) / (finish - start))
                 if annealer.piece(warm, warm, finish - now):
                     self.take_from(annealer)
-                elif self.incumbent.objective is not None and self.incumbent.objective.better_than(annealer.objective):
-                    assert self.incumbent.best is not None
-                    annealer.restart(self.incumbent.best.order)
+                self.take_proposals(relaxation)
+                best = self.incumbent.best
+                if best is not None and best.objective is not None and best.objective.better_than(annealer.objective):
+                    annealer.restart(best.order)
                 self.incumbent.report()
             if self.incumbent.best is not None:
                 annealer.restart(self.incumbent.best.order)
+
+    def run_relaxation(self, relaxation: Relaxation) -> None:
+        """Run it to its end here, stopped from a thread of its own if that is asked for."""
+        over = threading.Event()
+
+        def watch() -> None:
+            while not over.wait(0.02):
+                if self.asked():
+                    relaxation.cancel()
+
+        watcher = threading.Thread(target=watch, name="relaxation watch")
+        watcher.start()
+        try:
+            relaxation.run()
+        finally:
+            over.set()
+            watcher.join()
 
     def anneal_for_work(self, trials: int) -> None:
         """Cool once in a fixed number of trials."""
@@ -193,7 +241,13 @@ def _by_the_clock(solver: Solver) -> Result:
     solver.begin(solver.late)
     solver.exactly(solver.late, compiled=False)
     if not solver.proven() and not solver.late():
-        solver.anneal_for_time()
+        from planner.optimise.cpsat.run import RelaxationThread
+
+        beside = RelaxationThread(solver.relaxation(solver.deadline - time.perf_counter(), deterministic=False))
+        try:
+            solver.anneal_for_time(beside.relaxation)
+        finally:
+            beside.close()
     solver.tighten()
     return solver.result(Stopped.ASKED if solver.asked() else Stopped.TIME)
 
@@ -205,5 +259,9 @@ def _reproducibly(solver: Solver) -> Result:
     work = int(solver.seconds * TRIALS_PER_SECOND)
     if not solver.proven():
         solver.anneal_for_work(work)
+        if not solver.asked():
+            relaxation = solver.relaxation(solver.seconds * DETERMINISTIC_UNITS, deterministic=True)
+            solver.run_relaxation(relaxation)
+            solver.take_proposals(relaxation)
     solver.tighten()
     return solver.result(Stopped.ASKED if solver.asked() else Stopped.WORK)

@@ -60,9 +60,9 @@ class Tables(NamedTuple):
 class Scratch(NamedTuple):
     """Room in which one step is worked out; after a step it holds that step's times, levels and failure.
 
-    ``time`` (4, K): starts of arc blocks, the same shifted, starts and seconds of node blocks; ``level`` (2, K, R) before
-    and after each block of arc and node; ``now`` (R,) the level reached; ``failure`` (3,): block, reservoir, moment;
-    ``amount`` (2,): poured, short by.
+    ``time`` (4, K): starts of arc blocks, the same shifted, starts and seconds of node blocks; ``level`` (2, K, R):
+    before and after each block of arc and node; ``now`` (R,) the level reached; ``failure`` (3,): block, reservoir,
+    moment; ``amount`` (2,): poured, short by.
     """
 
     time: Ints
@@ -177,8 +177,8 @@ def _members(problem: Problem) -> tuple[Ints, Ints, Ints]:
         before[then].append(first)
     options: list[list[int]] = [[] for _ in range(problem.takes)]
     for node, takes in enumerate(problem.covers):
-        for take in takes:
-            options[take].append(node)
+        for one in takes:
+            options[one].append(node)
     rows = [*(list(takes) for takes in problem.covers), *before, *options]
     bounds = np.cumsum([0, *(len(row) for row in rows)])
     pairs = np.stack([bounds[:-1], bounds[1:]], axis=1)

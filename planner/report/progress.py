@@ -14,6 +14,9 @@ from rich.text import Text
 QUIET_S = 10.0
 """Without a terminal: longest silence while nothing gets better."""
 
+NEWS_S = 1.0
+"""Without a terminal: shortest time between two lines."""
+
 
 class Progress(Protocol):
     """What the search reports; None where a number is not known yet."""
@@ -66,15 +69,19 @@ def progress_line(progress: Progress, elapsed_s: float | None = None) -> str:
 def watching(console: Console) -> Generator[Callable[[Progress], None], None, None]:
     """Show progress on a console while the block runs; yields the function that takes the reports.
 
-    On a terminal one line is kept up to date and vanishes at the end. Elsewhere a line is printed whenever the best
-    plan or the bound gets better, and at least every `QUIET_S` seconds of reports. Reports may come from any thread.
+    On a terminal one line is kept up to date and vanishes at the end. Elsewhere a line is printed when the best plan or
+    the bound gets better, at most one in `NEWS_S` seconds, and one in `QUIET_S` seconds otherwise. Reports may come from any thread.
     """
     if console.is_terminal and not console.is_dumb_terminal:
         display = _Moving()
         with Live(display, console=console, transient=True, refresh_per_second=4):
             yield display.report
     else:
-        yield _Lines(console).report
+        lines = _Lines(console)
+        try:
+            yield lines.report
+        finally:
+            lines.end()
 
 
 class _Moving:
@@ -100,12 +107,27 @@ class _Lines:
 
     def __init__(self, console: Console) -> None:
         self._console = console
-        self._shown: tuple[object, ...] | None = None
-        self._shown_s = 0.0
+        self._shown = ""
+        self._shown_s = -NEWS_S
+        self._held: Progress | None = None
 
     def report(self, progress: Progress) -> None:
-        news = (progress.best_points, progress.points_bound, progress.best_cost_h, progress.cost_bound_h)
-        if news == self._shown and progress.elapsed_s - self._shown_s < QUIET_S:
+        news = _without_seconds(progress)
+        if progress.elapsed_s - self._shown_s < (QUIET_S if news == self._shown else NEWS_S):
+            self._held = progress
             return
-        self._shown, self._shown_s = news, progress.elapsed_s
+        self._print(progress)
+
+    def end(self) -> None:
+        """Print the last news if it came too soon after other news."""
+        if self._held is not None and _without_seconds(self._held) != self._shown:
+            self._print(self._held)
+
+    def _print(self, progress: Progress) -> None:
+        self._shown, self._shown_s, self._held = _without_seconds(progress), progress.elapsed_s, None
         self._console.print(Text(progress_line(progress)), soft_wrap=True)
+
+
+def _without_seconds(progress: Progress) -> str:
+    """All but the seconds, as rounded as people see it."""
+    return progress_line(progress, 0.0)

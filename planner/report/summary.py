@@ -64,9 +64,18 @@ class Stretch:
 
     @property
     def label(self) -> str:
-        """The target's name and how many takes, or the step's own label."""
+        """The target's name and how many takes, the take's name, or the step's own label."""
         first = self.steps[0]
-        return f"{first.target} ({len(self.steps)} takes)" if len(self.steps) > 1 else first.label
+        if len(self.steps) > 1:
+            return f"{first.target} ({len(self.steps)} takes)"
+        if decides(first):
+            return first.label if first.take in first.label else f"{first.label}: {first.take}"
+        return first.take or first.label
+
+
+def decides(step: Step) -> bool:
+    """Whether a step is the pause after a take in which people decide what comes next."""
+    return step.label.startswith("look, then decide")
 
 
 def stretches(steps: Iterable[Step], clock: Clock) -> list[Stretch]:
@@ -80,6 +89,8 @@ def stretches(steps: Iterable[Step], clock: Clock) -> list[Stretch]:
             last is not None
             and last.kind == step.kind == StepKind.TAKE
             and bool(step.target)
+            and not decides(last)
+            and not decides(step)
             and (last.target, last.user, last.attended) == (step.target, step.user, step.attended)
             and clock.moment(last.start_s).date() == clock.moment(step.start_s).date()
         )
@@ -149,14 +160,15 @@ def _helium(step: Step, rig: Rig | None) -> str:
 def _totals(plan: Plan, console: Console) -> None:
     score = plan.score
     wet = any(step.helium_after_L is not None for step in plan.steps)
-    takes = sum(step.kind == StepKind.TAKE and bool(step.target) for step in plan.steps)
+    takes = sum(step.kind == StepKind.TAKE and not decides(step) for step in plan.steps)
     transfers = sum(step.poured_L > 0 for step in plan.steps)
     poured_L = sum(step.poured_L for step in plan.steps)
+    pour = "transfer pours" if transfers == 1 else "transfers pour"
     console.print(
         Text(
             f"{takes} takes, {score.points} of at most {score.points_bound} points; moving {hours(score.moving_s)}"
             + (f", helium {rounded(score.litres)} L" if wet else "")
-            + (f"; {transfers} transfers pour {rounded(poured_L)} L" if transfers else "")
+            + (f"; {transfers} {pour} {rounded(poured_L)} L" if transfers else "")
             + "."
         )
     )

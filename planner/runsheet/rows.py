@@ -32,6 +32,7 @@ class Row:
     number: str
     kind: str
     what: str
+    how: str
     weekday: str
     begins: str
     since: str
@@ -99,12 +100,14 @@ def row_of(number: str, step: Step, rig: Rig, walls: WallTimes, letters: dict[st
     per_current = float(rig.magnet.field_per_current_T_per_A)
     fields_T = [state.coil.field_T[2] for state in (before, after)]
     fields = [f"{tesla(field_T)} = {ampere(field_T / per_current)}" for field_T in fields_T]
+    what, how = _title(step)
     set_points = coil_set_points(step, walls, per_current)
     kelvins = [kelvin(state.stage.temperature_K) for state in (before, after)]
     return Row(
         number=number,
         kind=str(step.kind),
-        what=clean(step.label),
+        what=what,
+        how=how,
         weekday=walls.weekday(step.start_s),
         begins=walls.time(step.start_s),
         since=elapsed(step.start_s),
@@ -127,13 +130,22 @@ def row_of(number: str, step: Step, rig: Rig, walls: WallTimes, letters: dict[st
     )
 
 
+def _title(step: Step) -> tuple[str, str]:
+    """What a row is called, and what is done if the name does not say it: a take goes by its user's name for it."""
+    label, take = clean(step.label), clean(step.take)
+    if not take or step.kind != StepKind.TAKE:
+        return label, ""
+    if step.label.startswith(DECIDE):
+        return (label if take in label else f"{label}: {take}"), ""
+    return take, label if label != take else ""
+
+
 def _about(step: Step, letters: dict[str, str]) -> tuple[tuple[str, str], ...]:
     user = clean(step.user)
     letter = letters.get(step.user, "")
     pairs = [
         ("user", f"{letter} · {user}" if letter else user),
         ("sample", step.sample),
-        ("take", step.take if step.take != step.label else ""),
         ("direction", step.direction),
         *step.details,
     ]

@@ -12,7 +12,7 @@ rig = "ref_w.rig.toml"
 zone = "Europe/Vienna"
 start = 2031-03-03T08:30:00
 end = {end}
-staffed = [{{ days = "Mon-Fri", from = "08:30", to = "18:00" }}]
+staffed = [{{ {staffed} }}]
 present = {{ {present} }}
 wanted_end = {{ {wanted} }}
 helium = {{ {helium} }}
@@ -63,9 +63,12 @@ def week(
     quiet: str = "",
     slots: str = "",
     away: str = "",
+    staffed: str = 'days = "Mon-Fri", from = "08:30", to = "18:00"',
 ) -> str:
     """The text of a week."""
-    head = WEEK.format(present=present, end=end, wanted=wanted, helium=helium, quiet=quiet, slots=slots, away=away)
+    head = WEEK.format(
+        present=present, end=end, wanted=wanted, helium=helium, quiet=quiet, slots=slots, away=away, staffed=staffed
+    )
     return head + targets
 
 

@@ -28,9 +28,11 @@ def test_fillings(written: object, value: float) -> None:
     assert read_filling(written).text == str(written).strip()
 
 
-@pytest.mark.parametrize("written", [0, "0", "0/3", "1/0", "nan", "inf", True, None, [1], "a third", "", "1/3/5", "1e999"])
+@pytest.mark.parametrize(
+    "written", [0, "0", "0/3", "1/0", "nan", "inf", True, None, [1], "a third", "", "1/3/5", "1e999"]
+)
 def test_what_is_no_filling(written: object) -> None:
-    with pytest.raises(ValueError, match='^expected a filling such as "1/3", 2 or 2.5'):
+    with pytest.raises(ValueError, match=r'^expected a filling such as "1/3", 2 or 2\.5'):
         read_filling(written)
 
 
@@ -58,7 +60,7 @@ def test_ranges_keep_their_order_and_text() -> None:
 
 @pytest.mark.parametrize("written", ["1 T", "1 T - 2 T", "1 T to 1 T", "1 T to 2 K", "to 2 T", 3, None])
 def test_what_is_no_field_range(written: object) -> None:
-    with pytest.raises(ValueError, match="^expected a "):
+    with pytest.raises(ValueError, match=r"^expected a "):
         read_field_range(written)
 
 
@@ -80,5 +82,5 @@ def test_temperatures() -> None:
     assert read_temperature("<=50 mK") == TemperatureAsk(0.05, at_most=True, text="<=50 mK")
     assert read_temperature("base").kelvin is None
     for written in ("0 K", "-1 K", "50", 0.05, "≥ 50 mK", None):
-        with pytest.raises(ValueError, match="quantity such as|above 0 K"):
+        with pytest.raises(ValueError, match=r"quantity such as|above 0 K"):
             read_temperature(written)

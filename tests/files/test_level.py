@@ -25,7 +25,7 @@ def test_straight_lines_between_points(percent: float, litres: float) -> None:
 
 def test_a_line_holds_for_the_trusted_level() -> None:
     assert BATH is not None
-    # gauge error 2 %: to trust 45 % the gauge must read 47 % = 0.8 · 47 L; to trust 60 % it must read 62 % = 40 + 1.2 · 12 L
+    # gauge error 2 %: to trust 45 % the gauge must read 47 %, 0.8 · 47 L; for 60 % it must read 62 %, 40 + 1.2 · 12 L
     assert litres_for_trusted(BATH, 45) == pytest.approx(37.6)
     assert litres_for_trusted(BATH, 60) == pytest.approx(54.4)
     assert litres_for_trusted(BATH, 49) == pytest.approx(40 + 1.2)  # across the table's edge

@@ -16,6 +16,7 @@ from planner.files.reading import LARGEST_FILE, MOST_TARGETS
 from tests.builders import DRY, REMOVED, Changes, rig_text, week_text
 
 HOLD: Changes = {"name": "T1", "kind": "hold", "field": "1 T", "duration": "1 h"}
+TOP_SWEPT: Changes = {"gate": "top", "sweep": "0 V to 1 V", "points": 5}
 EXAMPLES = Path(__file__).parents[2] / "example_plans"
 
 
@@ -48,8 +49,10 @@ def test_every_problem_shows_at_once() -> None:
     )
     assert {str(problem) for problem in found} == {
         'w.toml: zone is "Europe/Vienn": expected an IANA time zone such as "Europe/Vienna"',
-        'w.toml: present.level is 90: expected a quantity such as "85 %": a bare number has no unit; '
-        'write it as text, for example "90 %"',
+        (
+            'w.toml: present.level is 90: expected a quantity such as "85 %": a bare number has no unit; '
+            'write it as text, for example "90 %"'
+        ),
         'w.toml: helium.stock is "100 K": expected a quantity such as "60 L": "K" is not a unit of this kind',
         'w.toml: staffd: unknown key (did you mean "staffed"?)',
         "w.toml: targets[0].priority is 7: expected at most 5",
@@ -81,7 +84,7 @@ def test_both_files_speak_at_once(tmp_path: Path) -> None:
         ("end", "2031-03-03T07:00", "must be after the start, 2031-03-03 08:00:00"),
         ("end", "2031-09-03T07:00", "ten weeks at most"),
         ("end", "9999-12-31T23:00", "year from 1970 to 2199"),
-        ("present.temperature", "warm", 'present.temperature is "warm": expected a quantity such as "42 mK"; or the word'),
+        ("present.temperature", "warm", 'temperature is "warm": expected a quantity such as "42 mK"; or the word "base"'),
         ("present.persistent_current", "5 T", '"T" is not a unit of this kind; or the word "unknown"'),
         ("present.coil", "on", "expected 'zero', 'driven' or 'persistent'"),
         ("users.0.letter", "a", 'users[0].letter is "a": expected one capital letter'),
@@ -99,8 +102,8 @@ def test_both_files_speak_at_once(tmp_path: Path) -> None:
         ("staffed.0.days", "Mo-Fr", 'expected weekdays such as "Mon-Fri", "Mon, Wed" or "daily"'),
         ("staffed.0.from", 8, 'staffed[0].from is 8: expected a time of day such as "08:30"'),
         ("helium", {"deliveries": [{"at": 5, "volume": "60 L"}]}, "helium.deliveries[0].at is 5: expected a date"),
-        ("helium", {"deliveries": [{"at": "Tuesday", "volume": "60 L"}]}, "helium.deliveries[0].at is Tuesday: expected"),
-        ("quiet", [{"name": "q", "from": "Wed 06:00", "to": "Tue 20:00"}], "quiet[0] is Wed 06:00 to Tue 20:00: must end"),
+        ("helium", {"deliveries": [{"at": "Tuesday", "volume": "60 L"}]}, "deliveries[0].at is Tuesday: expected"),
+        ("quiet", [{"name": "q", "from": "Wed 06:00", "to": "Tue 20:00"}], "is Wed 06:00 to Tue 20:00: must end"),
         ("format", REMOVED, "format: expected the file format version, format = 1"),
         ("kind", "rig", 'kind is "rig": expected a week file'),
         ("rig", 3, "rig is 3: expected text in quotes"),
@@ -126,7 +129,7 @@ def test_one_mistake_in_a_week_is_one_problem(place: str, value: Any, says: str)
         ({"kind": REMOVED}, "targets[0].kind: expected a kind of target (known: hold, field sweep, gate sweep, "),
         ({"kind": 3}, "targets[0].kind is 3: expected a kind of target"),
         ({"sample": ["S1"]}, "targets[0].sample: expected text in quotes"),
-        ({"gates": {"tip": "1 V"}}, 'targets[0].gates.tip is "tip": expected a gate of sample "S1" (did you mean "top"?)'),
+        ({"gates": {"tip": "1 V"}}, '.gates.tip is "tip": expected a gate of sample "S1" (did you mean "top"?)'),
         ({"gates": {"map": "x"}}, 'targets[0].gates.map is "x": expected a quantity such as "0.25 V"'),
         ({"windows": [{"from": "Tue 9:00"}]}, "targets[0].windows[0].to: is missing"),
         ({"points": 5}, "targets[0].points: unknown key"),
@@ -147,17 +150,28 @@ def test_one_mistake_in_a_target(changes: Changes, says: str) -> None:
         ({"kind": "field sweep", "field": "1 T to 1 T"}, "the two ends are the same"),
         ({"kind": "field sweep", "field": "1 T"}, 'expected a range such as "0 T to 12 T"'),
         (
-            {"kind": "gate sweep", "field": "1 T", "gate": "top", "sweep": "0 V to 1 V", "points": 5, "second_gate": "back"},
+            {"kind": "gate sweep", "field": "1 T", **TOP_SWEPT, "second_gate": "back"},
             "a second gate needs `second_gate`, `second_sweep` and `second_points`",
         ),
         (
-            {"kind": "gate sweep", "field": "1 T", "gate": "top", "sweep": "0 V to 1 V", "points": 5, "second_gate": "top",
-             "second_sweep": "0 V to 1 V", "second_points": 3},
+            {"kind": "gate sweep", "field": "1 T", **TOP_SWEPT,
+             "second_gate": "top", "second_sweep": "0 V to 1 V", "second_points": 3},
             "second_gate: must be another gate",
         ),
-        ({"kind": "map", "gate": "top", "sweep": "0 V to 1 V", "points": 5}, "expected one of `field`, `filling`"),
-        ({"kind": "map", "gate": "top", "sweep": "0 V to 1 V", "points": 5, "field": "0 T to 1 T"}, "`rungs` goes with"),
-        ({"kind": "temperature series", "field": "1 T", "temperatures": [], "duration": "1 h"}, "expected at least 1 of them"),
+        (
+            {"kind": "gate sweep", "field": "1 T", **TOP_SWEPT, "gates": {"top": "1 V"}},
+            "gates.top: this gate is swept, so it cannot be held as well",
+        ),
+        (
+            {"kind": "map", "fields": ["1 T"], **TOP_SWEPT, "gates": {"top": "1 V"}},
+            "gates.top: this gate is swept",
+        ),
+        ({"kind": "map", **TOP_SWEPT}, "expected one of `field`, `filling`"),
+        ({"kind": "map", **TOP_SWEPT, "field": "0 T to 1 T"}, "`rungs` goes with"),
+        (
+            {"kind": "temperature series", "field": "1 T", "temperatures": [], "duration": "1 h"},
+            "expected at least 1 of them",
+        ),
     ],
 )  # fmt: skip
 def test_targets_must_be_whole(target: Changes, says: str) -> None:
@@ -184,7 +198,7 @@ def test_targets_must_be_whole(target: Changes, says: str) -> None:
         ({"stage.highest": "2 K"}, "warming: must begin above base and reach highest (2 K)"),
         ({"stage.warming.0.to": "20 mK"}, "warming: must begin above base"),
         ({"stage.warming.1.time": "1 min"}, "times must not fall"),
-        ({"policies": {"together": ["feild"]}}, "policies.together[0] is \"feild\": expected 'field', 'temperature' or"),
+        ({"policies": {"together": ["feild"]}}, "together[0] is \"feild\": expected 'field', 'temperature' or"),
         ({"kind": "week"}, 'kind is "week": expected a rig file'),
     ],
 )  # fmt: skip
@@ -217,12 +231,11 @@ def test_a_week_must_fit_its_rig(tmp_path: Path, week_changes: Changes, rig_chan
 
 
 def test_a_pace_must_be_set_by_something(tmp_path: Path) -> None:
-    sweep = {"gate": "top", "sweep": "0 V to 1 V", "points": 5}
     targets: list[Changes] = [
-        {"name": "G", "kind": "gate sweep", "field": "1 T", **sweep},
-        {"name": "M", "kind": "map", "fields": ["1 T"], **sweep},
+        {"name": "G", "kind": "gate sweep", "field": "1 T", **TOP_SWEPT},
+        {"name": "M", "kind": "map", "fields": ["1 T"], **TOP_SWEPT},
         {"name": "F", "kind": "field sweep", "field": "0 T to 1 T", "feature": "20 mT"},
-        {"name": "fine", "kind": "gate sweep", "field": "1 T", "dwell": "1 s", **sweep},
+        {"name": "fine", "kind": "gate sweep", "field": "1 T", "dwell": "1 s", **TOP_SWEPT},
     ]
     path = written(tmp_path, week_text(None, targets), rig_text())
     with pytest.raises(InputError) as caught:

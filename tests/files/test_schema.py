@@ -14,6 +14,7 @@ from planner.files.targets import TARGET_KINDS
 from tests.builders import Changes, rig_text, week_text
 
 SWEEP: Changes = {"gate": "top", "sweep": "-500 mV to 0.5 V", "points": 5, "dwell": "2 s"}
+NIGHT: Changes = {"from": "Tue 20:00", "to": "Wed 06:00"}
 ONE_OF_EACH: list[Changes] = [
     {"name": "hold", "kind": "hold", "filling": "2/3", "duration": "90 min", "temperature": "≤ 42 mK"},
     {"name": "sweep", "kind": "field sweep", "filling": "2/5 to 1/3", "rate": "26 mT/min"},
@@ -21,8 +22,8 @@ ONE_OF_EACH: list[Changes] = [
     {"name": "gate", "kind": "gate sweep", "field": "1 T", "gates": {"back": "-0.25 V"}, **SWEEP},
     {"name": "series", "kind": "temperature series", "field": "1 T", "temperatures": ["42 mK"], "duration": "1 h"},
     {"name": "map", "kind": "map", "fillings": ["1/3", 2], **SWEEP},
-    {"name": "other", "kind": "other work", "what": "LED", "duration": "600 s", "windows": [{"from": "Tue 9:00", "to": "Tue 10:00"}]},
-]  # fmt: skip
+    {"name": "other", "kind": "other work", "what": "LED", "duration": "600 s", "windows": [NIGHT]},
+]
 
 
 def tables(schema: dict[str, Any]) -> Iterator[tuple[str, str, dict[str, Any]]]:
@@ -33,7 +34,10 @@ def tables(schema: dict[str, Any]) -> Iterator[tuple[str, str, dict[str, Any]]]:
 
 def units_of(shown: Any) -> list[str]:
     if isinstance(shown, dict):
-        return [*([shown["unit"]] if "unit" in shown else []), *(u for inner in shown.values() for u in units_of(inner))]
+        return [
+            *([shown["unit"]] if "unit" in shown else []),
+            *(u for inner in shown.values() for u in units_of(inner)),
+        ]
     return [unit for inner in shown for unit in units_of(inner)] if isinstance(shown, list) else []
 
 
@@ -92,7 +96,7 @@ def test_every_kind_of_target_is_in_the_schema() -> None:
 
 
 def test_a_week_dumped_and_read_again_is_the_same_text_for_text() -> None:
-    week = parse_week(week_text({"present.temperature": "42 mK", "quiet": [{"name": "q", "from": "Tue 20:00", "to": "Wed 06:00"}]}, ONE_OF_EACH))  # fmt: skip
+    week = parse_week(week_text({"present.temperature": "42 mK", "quiet": [{"name": "q", **NIGHT}]}, ONE_OF_EACH))
     dumped = week.model_dump(by_alias=True)
     again = Week.model_validate(dumped)
     assert again == week

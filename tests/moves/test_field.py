@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from itertools import pairwise
+
 import pytest
 
 from planner.moves import field_legs
@@ -131,7 +133,7 @@ UNIPOLAR: Changes = {"magnet.supply.polarity": "unipolar", "magnet.supply.revers
 def test_reversal(begin_T: float, finish_T: float, actions: list[tuple[str, int]]) -> None:
     legs = field_legs(rig(UNIPOLAR), begin_T, finish_T)
     assert [(leg.action, leg.seconds) for leg in legs] == actions
-    assert all(one.end_s == other.start_s for one, other in zip(legs, legs[1:], strict=False))
+    assert all(one.end_s == other.start_s for one, other in pairwise(legs))
     for leg in legs:
         if leg.action == "reverse":
             assert fields(leg) == (0, 0)

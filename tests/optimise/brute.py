@@ -75,9 +75,7 @@ class Simulator:
             for a, s, x in zip(r.arrival_reservoir, r.arrival_second, r.arrival_amount, strict=True)
         ]
         places = len(problem.place_wait_rate)
-        self.arcs = {
-            (a, b): self._pieces(problem.arc_blocks, (a, b)) for a in range(places) for b in range(places)
-        }
+        self.arcs = {(a, b): self._pieces(problem.arc_blocks, (a, b)) for a in range(places) for b in range(places)}
         self.own = [self._pieces(problem.node_blocks, (n,)) for n in range(problem.nodes)]
         self.place_rate = problem.place_wait_rate.tolist()
         self.place_min = problem.place_wait_min.tolist()
@@ -116,9 +114,7 @@ class Simulator:
     def latest(self, calendar: int, finish: int, seconds: int) -> int:
         if calendar < 0:
             return finish - seconds
-        return max(
-            min(finish, f) - seconds for b, f in self.intervals[calendar] if min(finish, f) - seconds >= b
-        )
+        return max(min(finish, f) - seconds for b, f in self.intervals[calendar] if min(finish, f) - seconds >= b)
 
     def came(self, reservoir: int, after: int, until: int) -> float:
         return sum(x for r, s, x in self.arrivals if r == reservoir and after < s <= until)

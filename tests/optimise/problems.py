@@ -131,7 +131,10 @@ def random_problem(seed: int, shape: Shape | None = None, takes: int = 4) -> Pro
                     arcs.rates["wait_min"][a, b, k, 0] = line
     musts = np.zeros(shape.takes, dtype=np.bool_)
     musts[rng.permutation(shape.takes)[: shape.musts]] = True
-    pairs = {tuple(sorted(rng.choice(shape.takes, 2, replace=False).tolist())) for _ in range(shape.precedences if shape.takes > 1 else 0)}
+    pairs = {
+        tuple(sorted(rng.choice(shape.takes, 2, replace=False).tolist()))
+        for _ in range(shape.precedences if shape.takes > 1 else 0)
+    }
     level = rng.uniform(7.0 if shape.week else 4.0, full, R)
     price = np.full(R, 15.0 * scale)
     arrivals: tuple[list[int], list[int], list[float]] = ([], [], [])

@@ -48,9 +48,9 @@ def small_plan() -> Plan:
     gates = Leg("gates", "gate ramp", 0, 25, "gate rate", gates_V=(REST.gates_V, (("S1/back", 0.0), ("S1/top", 0.0))))
     hold = Leg("coil", "hold", 1200, 4800, "duration asked", 0.7, coil=(DRIVEN.coil, DRIVEN.coil))
     steps = (
-        Step(1, StepKind.MOVE, "ramp to 6 T", 0, 1200, REST, DRIVEN, (ramp, warm, gates), 80.0, 79.2, pace="rate table"),
-        Step(2, StepKind.TAKE, "hold at 6 T", 1200, 4800, DRIVEN, DRIVEN, (hold,), 79.2, 78.5, target="T1", take="T1 · 1",
-             user="U1", sample="S1", direction="up", attended=True, people=("Operator 1", "Operator 2"),
+        Step(1, StepKind.MOVE, "ramp to 6 T", 0, 1200, REST, DRIVEN, (ramp, warm, gates), 80.0, 79.2, pace="table"),
+        Step(2, StepKind.TAKE, "hold at 6 T", 1200, 4800, DRIVEN, DRIVEN, (hold,), 79.2, 78.5, target="T1",
+             take="T1 · 1", user="U1", sample="S1", direction="up", attended=True, people=("Operator 1", "Operator 2"),
              details=(("file", "s1_hold"),), notes=("provisional",)),
         Step(3, StepKind.SERVICE, "helium transfer", 4800, 6000, PARKED, PARKED, (), 78.5, 98.5, 20.0, 25.0, 40.0,
              "helium transfer"),

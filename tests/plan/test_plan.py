@@ -36,7 +36,8 @@ def test_json_carries_the_version_and_reads_as_plain_data() -> None:
 
 
 @pytest.mark.parametrize(
-    ("key", "value"), [("format", 2), ("format", "1"), ("steps", None), ("start", "Monday"), ("sources", [{"role": "x"}])]
+    ("key", "value"),
+    [("format", 2), ("format", "1"), ("steps", None), ("start", "Monday"), ("sources", [{"role": "x"}])],
 )
 def test_what_is_no_plan_of_this_version_is_refused(key: str, value: object) -> None:
     data = json.loads(small_plan().to_json())

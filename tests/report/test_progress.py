@@ -45,6 +45,22 @@ def test_without_a_terminal_a_line_for_each_news_and_one_in_ten_seconds() -> Non
     ]
 
 
+def test_news_too_small_to_be_seen_is_no_line() -> None:
+    out = io.StringIO()
+    with watching(Console(file=out)) as on_progress:
+        for step in range(5):
+            on_progress(Report(96, 104, 25.7 - 1e-6 * step, 23.9 + 1e-6 * step, 0.07, step / 10))
+    assert len(out.getvalue().splitlines()) == 1
+
+
+def test_a_flood_of_news_is_thinned_and_its_last_is_kept() -> None:
+    out = io.StringIO()
+    with watching(Console(file=out)) as on_progress:
+        for step in range(26):
+            on_progress(Report(step, 50, elapsed_s=step / 10))
+    assert [line.split()[3] for line in out.getvalue().splitlines()] == ["0", "10", "20", "25"]
+
+
 @pytest.mark.parametrize("no_color", [True, False])
 def test_on_a_terminal_one_line_that_vanishes(no_color: bool) -> None:
     out = io.StringIO()

@@ -137,6 +137,8 @@ class Builder:
 
     def add(self, kind: StepKind, label: str, legs: list[Leg], after: State, **more: object) -> Builder:
         """Append a step that lasts as long as its coil legs."""
+        if kind == StepKind.TAKE:
+            more.setdefault("take", label)
         coil = [leg for leg in legs if leg.channel == "coil"]
         end = coil[-1].end_s if coil else self.second
         poured = float(more.get("poured_L", 0.0))  # type: ignore[arg-type]
@@ -178,7 +180,7 @@ class Builder:
             legs.append(
                 Leg(
                     "gates",
-                    "move",
+                    "gate ramp",
                     self.second,
                     min(end, self.second + 50),
                     "gate rate",
@@ -213,7 +215,7 @@ class Builder:
         for at, volt in enumerate(ends_V):
             after = tuple((name, volt if name == gate else old) for name, old in volts)
             begin = self.second + at * share
-            legs.append(Leg("gates", "sweep", begin, begin + share, "dwell", 0, 0.005, gates_V=(volts, after)))
+            legs.append(Leg("gates", "gate sweep", begin, begin + share, "dwell", 0, 0.005, gates_V=(volts, after)))
             volts = after
         return self.add(StepKind.TAKE, label, legs, replace(self.state, gates_V=volts), **more)
 

@@ -17,7 +17,6 @@ def said(at: int, users: int) -> dict[str, object]:
         "user": names[who],
         "sample": f"chip {who + 1}",
         "target": ("Survey", "Gap at 2/3", "Fan between 2 and 1", "Two fifths, slowly")[at % 4],
-        "take": f"take · {at + 1}",
         "details": (("excitation", "10 nA"), ("contacts", "current 1-5, Rxx 2-3"), ("file", f"run_{at + 1:03d}")),
     }
 
@@ -27,7 +26,7 @@ def small_plan(**more: object) -> Plan:
     build = Builder()
     build.hold("Contacts and gate leakage", 2400, attended=True, people=("Operator 1",), **said(0, 3))
     build.sweep("Low-field Hall", (1.0, -1.0, 1.0), 0.1 / 60, direction="up, down", pace="lock-in filter", **said(0, 3))
-    build.hold("look, then decide: Low-field Hall", 1200, attended=True, people=("Operator 2",), **said(0, 3))
+    build.hold("look, then decide", 1200, take="Low-field Hall", attended=True, people=("Operator 2",), **said(0, 3))
     build.move(11.5)
     build.sweep("Survey", (4.5, 11.5), 0.2 / 60, direction="down, up", pace="rate asked for", **said(0, 3))
     build.move(6.8243, 0.05).park().hold("Gap at 2/3 at 50 mK", 5 * HOUR, **said(1, 3)).until(24 * HOUR + 1800)

@@ -122,6 +122,13 @@ def test_a_row_gives_clock_elapsed_set_points_levels_and_people(small_page: Page
     assert "pour 19.0 L, draw 25.7 L, 174.3 L left in stock" in words
 
 
+def test_a_take_goes_by_its_name_and_says_what_is_done(small_page: Page) -> None:
+    build = Builder(week_text())
+    plan = build.move(1.0).hold("rung 2: top −1 V to 0 V", 600, take="Fan · 2", target="Fan").move(0.0).plan()
+    assert "Fan · 2 rung 2: top −1 V to 0 V" in page_of(plan)[1].words
+    assert "look, then decide: Low-field Hall" in small_page.words
+
+
 def test_waits_are_one_and_nothing_of_no_length_is_shown(small: Plan) -> None:
     numbers = [number for number, _ in shown_steps(small)]
     assert "25–26" in numbers

@@ -227,10 +227,6 @@ def _swept(view: PlanView, target: GateSweep | Map, step: Step) -> Iterator[Find
     name = f"{target.sample}/{target.gate}"
     low, high = sorted((target.sweep.first, target.sweep.last))
     ways = [way.strip() for way in step.direction.split(",") if way.strip()]
-    wanted = {"up": ("up",), "down": ("down",), "both": ("up", "down"), "either": ()}[target.direction]
-    for way in wanted:
-        if way not in ways:
-            yield _one_way_missing(view, step, f"gate {name} is not swept {way}", way)
     pairs = _voltages(step, name)
     if not ways or not pairs:
         return
@@ -239,16 +235,6 @@ def _swept(view: PlanView, target: GateSweep | Map, step: Step) -> Iterator[Find
         if abs(limit - value) > EXACT:
             says = f"swept {step.direction} it is at {number(limit)} V there"
             yield _gate_finding(view, step, name, value, limit, says)
-
-
-def _one_way_missing(view: PlanView, step: Step, says: str, way: str) -> Finding:
-    return RETURN.finding(
-        f"{step.label}, {view.wall(step.start_s)}: {says}, and that was asked.",
-        at_s=step.end_s,
-        step=step.number,
-        subject=step.target,
-        mend=f"sweep {way} as well, or ask for one direction",
-    )
 
 
 def _gap(items: list[Placed], low: float, high: float) -> float | None:
@@ -262,31 +248,53 @@ def _gap(items: list[Placed], low: float, high: float) -> float | None:
     return None if at >= high - EXACT_T else at
 
 
+def _swept_ways(target: Target, step: Step, items: tuple[Placed, ...]) -> set[str]:
+    """The directions a step sweeps in: a field by its legs, a gate as the step names them."""
+    if not isinstance(target, FieldSweep):
+        return {way.strip() for way in step.direction.split(",")}
+    sweeps = [item for item in items if item.leg.action == "sweep" and item.moves]
+    return {"up" if item.last_T > item.first_T else "down" for item in sweeps}
+
+
+@RETURN.plan
+def return_sweep(view: PlanView) -> Iterator[Finding]:
+    """Every direction asked is swept; of either, one."""
+    for target, step, items in _takes(view):
+        if not isinstance(target, (FieldSweep, GateSweep, Map)):
+            continue
+        ways = _swept_ways(target, step, items)
+        wanted = {"both": ("up", "down"), "either": ()}.get(target.direction, (target.direction,))
+        if not wanted and not ways & {"up", "down"}:
+            wanted = ("up",)
+        what = "the field" if isinstance(target, FieldSweep) else f"gate {target.sample}/{target.gate}"
+        for way in wanted:
+            if way not in ways:
+                yield RETURN.finding(
+                    f"{step.label}, {view.wall(step.start_s)}: {what} is not swept {way}, and that was asked.",
+                    at_s=step.end_s,
+                    step=step.number,
+                    subject=step.target,
+                    mend=f"sweep {way} as well, or ask for one direction",
+                )
+
+
 @RANGE.plan
 def sweep_range(view: PlanView) -> Iterator[Finding]:
-    """A field sweep covers its range, widened by the density's error and cut at the rated field, in each direction."""
+    """A field sweep covers its range, widened by the density's error and cut at the rated field, each way it goes."""
     for target, step, items in _takes(view):
         if not isinstance(target, FieldSweep):
             continue
         low, high = sweep_range_T(view.week, view.rig, target)
         sweeps = [item for item in items if item.leg.action == "sweep" and item.moves]
-        ways = {
-            "up": [item for item in sweeps if item.last_T > item.first_T],
-            "down": [item for item in sweeps if item.last_T < item.first_T],
-        }
-        wanted = {"up": ("up",), "down": ("down",), "both": ("up", "down"), "either": ()}[target.direction]
-        if not wanted:
-            wanted = ("up",) if ways["up"] or not ways["down"] else ("down",)
-        for way in wanted:
-            if not ways[way]:
-                yield _one_way_missing(view, step, f"the field is not swept {way}", way)
-                continue
-            gap = _gap(ways[way], low, high)
+        for way, one_way in (
+            ("up", [item for item in sweeps if item.last_T > item.first_T]),
+            ("down", [item for item in sweeps if item.last_T < item.first_T]),
+        ):
+            gap = _gap(one_way, low, high) if one_way else None
             if gap is not None:
                 yield RANGE.finding(
-                    f"{step.label}, {view.wall(step.start_s)}: swept {way}, {tesla(low)} to {tesla(high)} is "
-                    "asked and the "
-                    f"part from {tesla(gap)} on is missing.",
+                    f"{step.label}, {view.wall(step.start_s)}: swept {way}, {tesla(low)} to {tesla(high)} is asked and "
+                    f"the part from {tesla(gap)} on is missing.",
                     value=gap,
                     least=high,
                     unit="T",

@@ -136,8 +136,9 @@ def idle_at_best(view: WeekView, bath: Bath) -> _Drain | None:
             return _Drain(begin, drained, at, crossed)
         there = max(0.0, view.stored_L(end) - drawn - bath.transfer.line_loss_L)
         poured = min(max(0.0, full_L - drained), there * efficiency)
-        drawn += poured / efficiency
-        level, at = drained + poured, end
+        if poured > 0:
+            drawn += poured / efficiency
+            level, at = drained + poured, end
     return None
 
 

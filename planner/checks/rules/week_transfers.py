@@ -46,18 +46,19 @@ def people_for_a_transfer(view: WeekView) -> Iterator[Finding]:
     if hours < view.least_transfer_s - 1e-6 or longest >= view.least_transfer_s - 1e-6:
         return
     names = f" ({', '.join(trained)})" if trained else ""
+    few = len(trained) < rules.people
     text = f"{len(trained)} of the {rules.people} people a transfer needs are trained for it{names}"
-    if len(trained) >= rules.people:
+    if not few:
         text = (
             f"The {rules.people} people a transfer needs are never there together for {length(view.least_transfer_s)}"
         )
     yield PEOPLE.finding(
         f"{text}: no transfer is possible before {view.wall(view.horizon_s)}.",
         kind=Kind.WARN,
-        value=float(len(trained)),
-        least=float(rules.people),
-        unit="people",
-        mend="train or ask one more person" if len(trained) < rules.people else "let their hours overlap",
+        value=float(len(trained)) if few else longest / 60,
+        least=float(rules.people) if few else view.least_transfer_s / 60,
+        unit="people" if few else "min",
+        mend="train or ask one more person" if few else "let their hours overlap",
     )
 
 

@@ -10,7 +10,16 @@ import numpy as np
 from planner.optimise.compiled.decode import EARNED, KEPT, MUSTS, TIME, States, build_states, copy_state, decode
 from planner.optimise.compiled.jit import entry, kernel
 from planner.optimise.problem import Floats, Ints
-from planner.optimise.tables import COVER_FIRST, COVER_LAST, MAX_USES, OPTION_FIRST, OPTION_LAST, Scratch, Tables, build_scratch
+from planner.optimise.tables import (
+    COVER_FIRST,
+    COVER_LAST,
+    MAX_USES,
+    OPTION_FIRST,
+    OPTION_LAST,
+    Scratch,
+    Tables,
+    build_scratch,
+)
 
 FAILED = 1e300
 NO_END = 1e6  # stands for musts missing where even the end cannot be reached
@@ -33,9 +42,9 @@ class Moves(NamedTuple):
 class Search(NamedTuple):
     """The state of one annealing run; scalars live in arrays so that a call can leave them changed.
 
-    Rows of ``order`` are the current, the trial and the best; ``length`` and rows of ``value`` (3, 4) belong to them: minus
-    musts done, minus prize, cost, end. ``length[3]`` is how much of the current order is used. ``random`` (2,): the states of
-    two generators; ``weight`` (2,): of a must and of a point.
+    Rows of ``order`` are the current, the trial and the best; ``length`` and rows of ``value`` (3, 4) belong to them:
+    minus musts done, minus prize, cost, end. ``length[3]`` is how much of the current order is used. ``random`` (2,):
+    the states of two generators; ``weight`` (2,): of a must and of a point.
     """
 
     tables: Tables
@@ -76,7 +85,7 @@ def draw(random: Any, below: int) -> int:
     """A number from 0 to ``below - 1`` (L'Ecuyer 1988, Commun. ACM 31, 742: two combined congruential generators)."""
     random[0] = random[0] * 40014 % 2147483563
     random[1] = random[1] * 40692 % 2147483399
-    return (random[0] - random[1]) % 2147483562 % below
+    return int((random[0] - random[1]) % 2147483562 % below)
 
 
 @kernel
@@ -93,15 +102,15 @@ def measure(Q: Any, states: Any, length: int, begin: int, row: int) -> int:
     if used < 0:
         # no end can be reached: the more is done, the sooner one may be
         Q.value[row, 0] = NO_END
-        Q.value[row, 1] = -float(states.count[length, EARNED])
+        Q.value[row, 1] = -float(states.state[length, EARNED])
         Q.value[row, 2] = 0.0
-        Q.value[row, 3] = -float(states.count[length, TIME])
+        Q.value[row, 3] = -float(states.state[length, TIME])
         return length
-    Q.value[row, 0] = -float(states.count[used, MUSTS])
-    Q.value[row, 1] = -float(states.count[used, EARNED])
+    Q.value[row, 0] = -float(states.state[used, MUSTS])
+    Q.value[row, 1] = -float(states.state[used, EARNED])
     Q.value[row, 2] = cost
     Q.value[row, 3] = float(end)
-    return used
+    return int(used)
 
 
 @kernel
@@ -120,7 +129,7 @@ def better(value: Any, left: int, right: int) -> bool:
 def energy(Q: Any, row: int) -> float:
     """The single number by which annealing compares."""
     weighted = Q.weight[0] * Q.value[row, 0] + Q.weight[1] * Q.value[row, 1]
-    return weighted + Q.value[row, 2] + 1e-4 * Q.value[row, 3]
+    return float(weighted + Q.value[row, 2] + 1e-4 * Q.value[row, 3])
 
 
 @kernel
@@ -191,7 +200,7 @@ def other_option(Q: Any, node: int) -> int:
     count = T.node[node, COVER_LAST] - first
     if count == 0:
         return node
-    return option(Q, T.member[first + draw(Q.random, count)])
+    return int(option(Q, T.member[first + draw(Q.random, count)]))
 
 
 @kernel
@@ -213,7 +222,7 @@ def move_block(Q: Any, length: int) -> int:
     relocate(Q, source, count, target)
     if count > 1 and draw(Q.random, 3) == 0:
         reverse(Q, target, count)
-    return min(source, target)
+    return int(min(source, target))
 
 
 @kernel
@@ -295,7 +304,7 @@ def change(Q: Any, length: int) -> Any:
         begin = draw(Q.random, max(1, length - count + 1))
         reverse(Q, begin, min(count, length - begin))
         return length, begin
-    if kind < 66 and covers and (position >= used or Q.states.count[position, KEPT] == 0):
+    if kind < 66 and covers and (position >= used or Q.states.state[position, KEPT] == 0):
         # a left-out take moves to the front of a place where it might fit, or takes the place of another
         target = draw(Q.random, max(1, used))
         if kind < 60:
@@ -318,7 +327,7 @@ def accept(Q: Any, length: int, begin: int, used: int) -> None:
     """Make the trial the current order."""
     for row in range(begin, length):
         Q.order[CURRENT, row] = Q.order[TRIAL, row]
-        Q.states.count[row, KEPT] = Q.trial_states.count[row, KEPT]
+        Q.states.state[row, KEPT] = Q.trial_states.state[row, KEPT]
         copy_state(Q.trial_states, row + 1, Q.states, row + 1)
     copy_value(Q, TRIAL, CURRENT)
     Q.length[CURRENT] = length
@@ -332,7 +341,7 @@ def keep_best(Q: Any) -> bool:
         return False
     count = 0
     for row in range(Q.length[USED]):
-        if Q.states.count[row, KEPT] == 1:
+        if Q.states.state[row, KEPT] == 1:
             Q.order[BEST, count] = Q.order[CURRENT, row]
             count += 1
     Q.length[BEST] = count
@@ -357,7 +366,7 @@ def restart(Q: Any, length: int) -> bool:
                 length += 1
     Q.length[CURRENT] = length
     Q.length[USED] = measure(Q, Q.states, length, 0, CURRENT)
-    return keep_best(Q)
+    return bool(keep_best(Q))
 
 
 @entry
@@ -381,7 +390,7 @@ def anneal(Q: Any, fresh: int, trials: int, hot: float, cold: float) -> int:
             continue
         S = Q.trial_states
         for row in range(begin):
-            S.count[row, KEPT] = Q.states.count[row, KEPT]
+            S.state[row, KEPT] = Q.states.state[row, KEPT]
         copy_state(Q.states, begin, S, begin)
         used = measure(Q, S, length, begin, TRIAL)
         worse = energy(Q, TRIAL) - energy(Q, CURRENT)

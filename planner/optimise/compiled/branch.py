@@ -24,9 +24,9 @@ class Branch(NamedTuple):
     """The state of one search; a call leaves off and the next goes on.
 
     ``order`` (2, n): the prefix and the best order, ``length`` (2,); ``choice`` (n + 1,): the next node to try at each
-    depth, 0 on arrival. ``value`` (2, 4) as in annealing: here and best. ``floor`` (2,): least priced burn a second, and
-    the reduced cost of the way to the end less what services can save. ``take_floor`` (T, 2): least reduced cost and
-    seconds of each take.
+    depth, 0 on arrival. ``value`` (2, 4) as in annealing: here and best. ``floor`` (2,): least priced burn a second,
+    and the reduced cost of the way to the end less what services can save. ``take_floor`` (T, 2): least reduced cost
+    and seconds of each take.
     """
 
     tables: Tables
@@ -59,13 +59,11 @@ def build_branch(tables: Tables, longest: int, floor: Floats, take_floor: Floats
 def record(B: Any, depth: int) -> None:
     """Read the prefix as a whole order and keep it if it is the best."""
     S = B.states
-    status, end, cost = step(
-        B.tables, B.scratch, END_NODE, S.count[depth, PLACE], S.count[depth, TIME], S.level, depth
-    )
+    status, end, cost = step(B.tables, B.scratch, END_NODE, S.state[depth, PLACE], S.state[depth, TIME], S.level, depth)
     if status != OK:
         return
-    B.value[0, 0] = -float(S.count[depth, MUSTS])
-    B.value[0, 1] = -float(S.count[depth, EARNED])
+    B.value[0, 0] = -float(S.state[depth, MUSTS])
+    B.value[0, 1] = -float(S.state[depth, EARNED])
     B.value[0, 2] = S.cost[depth] + cost
     B.value[0, 3] = float(end)
     for column in range(4):
@@ -88,9 +86,9 @@ def hopeless(B: Any, depth: int) -> bool:
     """Whether nothing that begins with the prefix can be better than the best: by musts, by prize, by cost."""
     T = B.tables
     S = B.states
-    now = S.count[depth, TIME]
-    musts = float(S.count[depth, MUSTS])
-    prize = float(S.count[depth, EARNED])
+    now = S.state[depth, TIME]
+    musts = float(S.state[depth, MUSTS])
+    prize = float(S.state[depth, EARNED])
     cost = S.cost[depth] + B.floor[RATE] * (T.horizon - now) + B.floor[TAIL]
     for take in range(len(T.take)):
         if S.seen[take] == 0 and now + B.take_floor[take, 1] <= T.horizon:
@@ -98,15 +96,15 @@ def hopeless(B: Any, depth: int) -> bool:
             prize += T.take[take, PRIZE]
             cost += B.take_floor[take, 0]
     if -musts != B.value[1, 0]:
-        return -musts > B.value[1, 0]
+        return bool(-musts > B.value[1, 0])
     if -prize != B.value[1, 1]:
-        return -prize > B.value[1, 1]
+        return bool(-prize > B.value[1, 1])
     # now everything that earns is needed; only what earns nothing may stay undone
     for take in range(len(T.take)):
-        if S.seen[take] == 0 and now + B.take_floor[take, 1] <= T.horizon:
-            if T.take[take, PRIZE] == 0 and T.take[take, MUST] == 0:
-                cost -= max(0.0, B.take_floor[take, 0])
-    return cost > B.value[1, 2] + 1e-7
+        spare = T.take[take, PRIZE] == 0 and T.take[take, MUST] == 0
+        if spare and S.seen[take] == 0 and now + B.take_floor[take, 1] <= T.horizon:
+            cost -= max(0.0, B.take_floor[take, 0])
+    return bool(cost > B.value[1, 2] + 1e-7)
 
 
 @entry

@@ -26,19 +26,18 @@ from planner.optimise.tables import (
     Tables,
 )
 
-
-# columns of States.count
+# columns of States.state
 TIME, PLACE, EARNED, MUSTS, KEPT = range(5)
 
 
 class States(NamedTuple):
     """The state before each item of an order of at most ``n`` items.
 
-    ``count`` (n + 1, 5): time, place, prize, musts done, and whether the item there was done, not skipped;
+    ``state`` (n + 1, 5): time, place, prize, musts done, and whether the item there was done, not skipped;
     ``level`` (n + 1, R); ``cost`` (n + 1,); ``seen`` (takes + nodes,): how often each is done so far.
     """
 
-    count: Ints
+    state: Ints
     level: Floats
     cost: Floats
     seen: Ints
@@ -47,12 +46,12 @@ class States(NamedTuple):
 def build_states(tables: Tables, length: int) -> States:
     """Room for the states of an order of at most ``length`` items, the first one set."""
     states = States(
-        count=np.zeros((length + 1, 5), dtype=np.int64),
+        state=np.zeros((length + 1, 5), dtype=np.int64),
         level=np.zeros((length + 1, tables.reservoir.shape[1])),
         cost=np.zeros(length + 1),
         seen=np.zeros(len(tables.take) + len(tables.node), dtype=np.int64),
     )
-    states.count[0, PLACE] = tables.node[0, EXIT]
+    states.state[0, PLACE] = tables.node[0, EXIT]
     states.level[0] = tables.reservoir[LEVEL]
     return states
 
@@ -61,7 +60,7 @@ def build_states(tables: Tables, length: int) -> States:
 def copy_state(source: Any, row: int, target: Any, target_row: int) -> None:
     """Copy the state before one item."""
     for column in range(KEPT):
-        target.count[target_row, column] = source.count[row, column]
+        target.state[target_row, column] = source.state[row, column]
     target.cost[target_row] = source.cost[row]
     for reservoir in range(source.level.shape[1]):
         target.level[target_row, reservoir] = source.level[row, reservoir]
@@ -74,7 +73,7 @@ def remember(T: Any, S: Any, items: Any, begin: int) -> None:
         S.seen[row] = 0
     takes = len(T.take)
     for position in range(begin):
-        if S.count[position, KEPT] == 1:
+        if S.state[position, KEPT] == 1:
             node = items[position]
             S.seen[takes + node] += 1
             for row in range(T.node[node, COVER_FIRST], T.node[node, COVER_LAST]):
@@ -114,26 +113,26 @@ def extend(T: Any, W: Any, S: Any, node: int, position: int, direct: bool) -> in
     """
     status = admitted(T, S, node)
     if status != OK:
-        return status
-    status, end, cost = step(T, W, node, S.count[position, PLACE], S.count[position, TIME], S.level, position)
+        return int(status)
+    status, end, cost = step(T, W, node, S.state[position, PLACE], S.state[position, TIME], S.level, position)
     if status != OK:
-        return status
+        return int(status)
     if direct and end > T.latest[T.node[node, EXIT]]:
         return HORIZON
     after = position + 1
-    S.count[after, TIME] = end
-    S.count[after, PLACE] = T.node[node, EXIT]
+    S.state[after, TIME] = end
+    S.state[after, PLACE] = T.node[node, EXIT]
     S.cost[after] = S.cost[position] + cost
-    S.count[after, EARNED] = S.count[position, EARNED]
-    S.count[after, MUSTS] = S.count[position, MUSTS]
+    S.state[after, EARNED] = S.state[position, EARNED]
+    S.state[after, MUSTS] = S.state[position, MUSTS]
     for reservoir in range(len(W.now)):
         S.level[after, reservoir] = W.now[reservoir]
     S.seen[len(T.take) + node] += 1
     for row in range(T.node[node, COVER_FIRST], T.node[node, COVER_LAST]):
         take = T.member[row]
         S.seen[take] = 1
-        S.count[after, EARNED] += T.take[take, PRIZE]
-        S.count[after, MUSTS] += T.take[take, MUST]
+        S.state[after, EARNED] += T.take[take, PRIZE]
+        S.state[after, MUSTS] += T.take[take, MUST]
     return OK
 
 
@@ -148,8 +147,8 @@ def evaluate(T: Any, W: Any, S: Any, items: Any, length: int, begin: int) -> Any
         status = extend(T, W, S, items[position], position, False)
         if status != OK:
             return status, position, 0.0, 0
-        S.count[position, KEPT] = 1
-    status, end, cost = step(T, W, END_NODE, S.count[length, PLACE], S.count[length, TIME], S.level, length)
+        S.state[position, KEPT] = 1
+    status, end, cost = step(T, W, END_NODE, S.state[length, PLACE], S.state[length, TIME], S.level, length)
     return status, length, S.cost[length] + cost, end
 
 
@@ -158,21 +157,22 @@ def decode(T: Any, W: Any, S: Any, items: Any, length: int, begin: int) -> Any:
     """Read an order from position ``begin`` on, skipping what cannot be done: (used length, cost, end).
 
     Skipped is also what leaves too little time for the arc to the end. Items at and after the used length are dropped
-    because the end could not be reached behind them; -1 if it cannot be reached at all. Prize and musts stand in the states at the used length.
+    because the end could not be reached behind them; -1 if it cannot be reached at all. Prize and musts stand in the
+    states at the used length.
     """
     remember(T, S, items, begin)
     for position in range(begin, length):
         status = extend(T, W, S, items[position], position, True)
-        S.count[position, KEPT] = 1 if status == OK else 0
+        S.state[position, KEPT] = 1 if status == OK else 0
         if status != OK:
             copy_state(S, position, S, position + 1)
     used = length
     while True:
-        status, end, cost = step(T, W, END_NODE, S.count[used, PLACE], S.count[used, TIME], S.level, used)
+        status, end, cost = step(T, W, END_NODE, S.state[used, PLACE], S.state[used, TIME], S.level, used)
         if status == OK:
             return used, S.cost[used] + cost, end
         used -= 1
-        while used >= 0 and S.count[used, KEPT] == 0:
+        while used >= 0 and S.state[used, KEPT] == 0:
             used -= 1
         if used < 0:
             return -1, math.inf, 0

@@ -77,7 +77,7 @@ class Plain:
 
 
 def cache_is_warm(name: str) -> bool:
-    """Whether a compiled copy of kernel ``name`` newer than the kernel files seems to lie on disk (a guess for speed)."""
+    """Whether a compiled copy of kernel ``name`` seems to lie on disk, by time stamps: a guess that costs only time."""
     folder = Path(_KERNELS[name].stats.cache_path or "")
     newest = max(path.stat().st_mtime for path in _FILES)
     source = Path(_KERNELS[name].py_func.__code__.co_filename).stem

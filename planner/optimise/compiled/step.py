@@ -8,6 +8,8 @@ from __future__ import annotations
 import math
 from typing import Any
 
+import numpy as np
+
 from planner.optimise.compiled.jit import kernel
 from planner.optimise.tables import (
     AFTER,
@@ -65,7 +67,7 @@ def fit(T: Any, calendar: int, moment: int, seconds: int) -> int:
     while low < last:
         start = max(moment, T.interval[low, 0])
         if start + seconds <= T.interval[low, 1]:
-            return start
+            return int(start)
         low += 1
     return -1
 
@@ -81,7 +83,7 @@ def fit_latest(T: Any, calendar: int, limit: int, seconds: int, floor: int) -> i
         if start <= floor:
             return floor
         if start >= T.interval[row, 0]:
-            return start
+            return int(start)
         row -= 1
     return floor
 
@@ -158,7 +160,7 @@ def level_after_arc(T: Any, W: Any, reservoir: int, place: int, node: int, momen
 def pour_length(T: Any, node: int, poured: float) -> int:
     """Seconds of a refill that pours ``poured``."""
     fixed = T.block[T.node[node, FIRST], SECONDS]
-    return int(math.ceil(fixed + T.pour[node, SECONDS_PER_UNIT] * max(poured, 0.0) - 1e-6))
+    return int(np.ceil(fixed + T.pour[node, SECONDS_PER_UNIT] * max(poured, 0.0) - 1e-6))
 
 
 @kernel
@@ -166,7 +168,7 @@ def source_has(T: Any, node: int, level: float) -> float:
     """How much a source at ``level`` can pour."""
     left = level - T.pour[node, SOURCE_FIXED]
     if T.pour[node, SOURCE_PER_UNIT] > 0.0:
-        return left / T.pour[node, SOURCE_PER_UNIT]
+        return float(left / T.pour[node, SOURCE_PER_UNIT])
     return math.inf if left >= -TOLERANCE else -math.inf
 
 
@@ -233,7 +235,9 @@ def shift_waits(T: Any, W: Any, node: int, place: int, moment: int, keep: int) -
     count = T.arc[place, target, 1]
     limit = keep
     for row in range(count - 1, -1, -1):
-        after = priced(T, T.place, target, PLACE_RATE) if row == count - 1 else priced(T, T.rule, first + row, WAIT_RATE)
+        after = (
+            priced(T, T.place, target, PLACE_RATE) if row == count - 1 else priced(T, T.rule, first + row, WAIT_RATE)
+        )
         least = priced(T, T.place, place, PLACE_RATE)
         for earlier in range(row):
             least = min(least, priced(T, T.rule, first + earlier, WAIT_RATE))
@@ -256,7 +260,7 @@ def shift_waits(T: Any, W: Any, node: int, place: int, moment: int, keep: int) -
         rate = priced(T, T.rule, first + row, WAIT_RATE)
     burn += priced(T, T.place, target, PLACE_RATE) * (keep - end)
     burn_shifted += priced(T, T.place, target, PLACE_RATE) * (keep - end_shifted)
-    return burn_shifted < burn - TOLERANCE
+    return bool(burn_shifted < burn - TOLERANCE)
 
 
 @kernel
@@ -309,7 +313,7 @@ def burn_wait(T: Any, W: Any, table: Any, row: int, kind: int, begin: int, finis
 
 @kernel
 def walk(T: Any, W: Any, node: int, place: int, moment: int, starts: int, levels: Any, given: int) -> Any:
-    """Levels along the arc at the times in row ``starts`` and the node: (status, end, priced use); ``W.now`` is the level after."""
+    """Levels along the arc at the times in row ``starts``, then the node: (status, end, priced use); sets ``now``."""
     target = T.node[node, ENTRY]
     arc_first = T.arc[place, target, 0]
     arc_count = T.arc[place, target, 1]

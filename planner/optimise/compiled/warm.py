@@ -1,4 +1,4 @@
-"""Have the kernels compiled without standing still: a child process compiles into the cache, this one goes on meanwhile.
+"""Have the kernels compiled without standing still: a child process compiles into the cache while this one goes on.
 
 Run as a module, this file is that child.
 """
