@@ -84,7 +84,7 @@ class Magnet(Table):
         leads_V = edges[-1] / self.field_per_current_T_per_A * self.supply.lead_resistance_ohm
         if leads_V >= self.supply.max_voltage_V:
             raise ValueError(
-                f"supply.max_voltage: at {edges[-1]:g} T the leads alone take {leads_V:.3g} V, so none is left to charge"
+                f"supply.max_voltage: at {edges[-1]:g} T the leads alone take {leads_V:.3g} V, none is left to charge"
             )
         needed_A = self.rated_field_T / self.field_per_current_T_per_A
         if needed_A > self.supply.max_current_A * (1 + 1e-9):

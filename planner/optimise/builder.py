@@ -7,7 +7,7 @@ from typing import Any
 import numpy as np
 
 from planner.optimise.compiled.decode import EARNED, KEPT, MUSTS, PLACE, TIME, build_states
-from planner.optimise.compiled.step import LOW, OK, TOO_FULL
+from planner.optimise.compiled.fitting import LOW, OK, TOO_FULL
 from planner.optimise.problem import Problem
 from planner.optimise.tables import (
     MAX_USES,

@@ -10,7 +10,7 @@ from collections.abc import Callable
 import numpy as np
 
 from planner.optimise.builder import Builder
-from planner.optimise.compiled.step import LOW, OK, PRECEDENCE
+from planner.optimise.compiled.fitting import LOW, OK, PRECEDENCE
 from planner.optimise.moves import Costs
 from planner.optimise.problem import Floats
 

@@ -6,8 +6,8 @@ from collections.abc import Sequence
 from collections.abc import Set as AbstractSet
 
 from planner.optimise.builder import Builder
+from planner.optimise.compiled.fitting import LOW, OK
 from planner.optimise.compiled.jit import Plain
-from planner.optimise.compiled.step import LOW, OK
 from planner.optimise.problem import Problem
 from planner.optimise.reading import evaluate
 from planner.optimise.result import Evaluation

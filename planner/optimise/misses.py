@@ -15,14 +15,8 @@ from typing import Any
 import numpy as np
 
 from planner.optimise.compiled.decode import TIME, build_states
-from planner.optimise.compiled.step import (
-    HORIZON,
-    LOW,
-    NO_INTERVAL,
-    OK,
-    SOURCE_LOW,
-    TOO_FULL,
-)
+from planner.optimise.compiled.fitting import HORIZON, LOW, NO_INTERVAL, OK, SOURCE_LOW, TOO_FULL
+from planner.optimise.compiled.warm import kernels_now
 from planner.optimise.problem import Ints, Problem
 from planner.optimise.tables import MAX_USES, Tables, build_scratch, build_tables
 
@@ -87,13 +81,7 @@ def explain(problem: Problem, order: Sequence[int], *, seconds: float = 1.0) -> 
     seconds
         Time in all; takes share it, and what could not be tried in time says so.
     """
-    from planner.optimise.compiled.warm import Warmer
-
-    warmer = Warmer()
-    try:
-        kernels = warmer.kernels
-    finally:
-        warmer.close()
+    kernels = kernels_now()
     tables = build_tables(problem)
     done = {take for node in order for take in problem.covers[node]}
     left = [take for take in range(problem.takes) if take not in done]

@@ -8,7 +8,7 @@ from typing import Any
 
 import numpy as np
 
-from planner.optimise.compiled.anneal import BEST, CURRENT, Moves, Search, build_search
+from planner.optimise.compiled.changes import BEST, CURRENT, Moves, Search, build_search
 from planner.optimise.moves import Costs, near_nodes, partners, services_of
 from planner.optimise.problem import Problem
 from planner.optimise.result import Objective

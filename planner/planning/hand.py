@@ -70,7 +70,9 @@ def _spent(compiled: Compiled, trace: Sequence[TraceStep]) -> tuple[int, float]:
     if not len(problem.reservoirs.level):
         return moving_s, 0.0
     services = problem.services
-    parts: list[TraceBlock | TraceWait] = [part for step in trace for part in (*step.blocks, *step.waits)]
+    parts: list[TraceBlock | TraceWait] = []
+    for step in trace:
+        parts += (*step.blocks, *step.waits)
     begin = float(problem.reservoirs.level[HELIUM])
     end = float(max(parts, key=lambda part: (part.start + part.seconds, part.start)).after[HELIUM]) if parts else begin
     fills = [(step.node, step.poured) for step in trace if step.poured > 0]

@@ -20,6 +20,8 @@ from planner.planning.progress import Progress
 
 Listener = Callable[[Progress], None]
 
+EXPLAIN_S = 4.0
+
 
 def plan_week(
     request: Request,
@@ -66,11 +68,11 @@ def plan_week(
     )
     if not result.feasible:
         raise NoPlanError(why_no_plan(compiled, result))
-    return assemble(compiled, result)
+    return assemble(compiled, result, explain_s=60.0 if reproducible else EXPLAIN_S)
 
 
-def assemble(compiled: Compiled, result: Result) -> Plan:
-    """The plan that a solve's answer stands for."""
+def assemble(compiled: Compiled, result: Result, *, explain_s: float = EXPLAIN_S) -> Plan:
+    """The plan that a solve's answer stands for; ``explain_s`` is the time to find out why takes were left out."""
     from planner.checks import check_plan
 
     request = compiled.request
@@ -86,7 +88,7 @@ def assemble(compiled: Compiled, result: Result) -> Plan:
         end=week.clock.moment(week.horizon_s),
         sources=request.sources,
         steps=steps,
-        left_out=left_out(compiled, result),
+        left_out=left_out(compiled, result, seconds=explain_s),
         score=_score(compiled, result, steps),
         compared=hand_orders(compiled, result),
         recovery=compiled.recovering,

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from datetime import datetime
 from functools import cached_property
 
 from planner.calendars import Calendar, both, same_all_through, tidy, weekly, without
@@ -19,6 +20,10 @@ class Availability:
         self._week = week
         self._clock = week.clock
         self.horizon_s = week.horizon_s
+
+    def moment(self, second: float) -> datetime:
+        """The wall time of a second."""
+        return self._clock.moment(second)
 
     @cached_property
     def always(self) -> Calendar:

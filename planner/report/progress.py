@@ -70,7 +70,8 @@ def watching(console: Console) -> Generator[Callable[[Progress], None], None, No
     """Show progress on a console while the block runs; yields the function that takes the reports.
 
     On a terminal one line is kept up to date and vanishes at the end. Elsewhere a line is printed when the best plan or
-    the bound gets better, at most one in `NEWS_S` seconds, and one in `QUIET_S` seconds otherwise. Reports may come from any thread.
+    the bound gets better, at most one in `NEWS_S` seconds, and one in `QUIET_S` seconds otherwise. Reports may come
+    from any thread.
     """
     if console.is_terminal and not console.is_dumb_terminal:
         display = _Moving()

@@ -137,7 +137,7 @@ def gate_lines(step: Step) -> tuple[str, ...]:
         before, after = dict(leg.gates_V[0]), dict(leg.gates_V[1])
         changed = [name for name in after if before.get(name, 0.0) != after[name]]
         moved.update(changed)
-        rate = f" at {significant(abs(leg.rate) * 1000)} mV/s" if leg.rate else ""
+        rate = f" at {significant(abs(leg.rate) * 1000)} mV/s" if leg.rate else f" in {duration(leg.seconds)}"
         sweep = "sweep " if "sweep" in leg.action else ""
         lines += [f"{clean(n)} {sweep}{_volt(before.get(n, 0.0))} → {_volt(after[n])} V{rate}" for n in changed]
     more = len(lines) - MOST_GATE_LINES

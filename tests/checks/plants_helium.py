@@ -77,7 +77,7 @@ def idle_exactly_to_the_reserve() -> Judged:
     return done(empty(rig(hours=ANY_TIME), staffed=ALWAYS, present=f'level = "{level} %"'))
 
 
-@plant("helium reserve", also=("transfer stock",), value=60 - 129.5 * 0.55 / 0.8 - 2, limit=30)
+@plant("helium reserve", also=("transfer stock",), value=60 - 48.5 * 0.55 / 0.8 - 2, limit=30)
 def week_that_cannot_last() -> Judged:
     return request(week(present='level = "60 %"', helium='stock = "0 L"', end="2031-03-08T18:00:00")), None
 

@@ -6,9 +6,11 @@ import pytest
 
 from planner.checks import RULES, check_plan, check_week
 from planner.plan import Finding, Kind
-from tests.checks import plants_helium, plants_magnet  # noqa: F401  the faults register themselves
+from tests.checks import plants_asked, plants_helium, plants_magnet, plants_work
 from tests.checks.build import serious
 from tests.checks.plants import PLANTS, SOUND, Judged, Plant
+
+FAMILIES = (plants_magnet, plants_helium, plants_work, plants_asked)
 
 
 def judged(made: Judged) -> tuple[Finding, ...]:
@@ -37,6 +39,7 @@ def test_plan_that_keeps_its_rules_passes(rule: str, make: object) -> None:
 
 
 def test_every_rule_has_a_plant() -> None:
+    assert {plant.make.__module__ for plant in PLANTS} == {module.__name__ for module in FAMILIES}
     assert {plant.rule for plant in PLANTS} == set(RULES)
 
 

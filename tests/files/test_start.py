@@ -70,6 +70,13 @@ def test_the_end_has_gates_at_rest_and_the_wanted_field() -> None:
     assert wanted.gates_V == (("S1/back", 0.0), ("S1/top", 0.0))
 
 
+def test_the_end_may_be_persistent() -> None:
+    wanted = end_state(week({"wanted_end": {"field": "6 T", "coil": "persistent"}}), rig())
+    assert wanted.coil.mode is CoilMode.PERSISTENT
+    assert wanted.coil.lead_current_A == (0, 0, 0)
+    assert wanted.coil.persistent_current_A == pytest.approx((0, 0, 60))
+
+
 def test_a_continuous_stage_holds_no_charge() -> None:
     state = start_state(week({"present.level": REMOVED}), rig(DRY))
     assert state.stage.charge == Charge("none")

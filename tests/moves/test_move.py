@@ -64,6 +64,26 @@ def test_a_warm_stage_does_not_wait_after_a_ramp() -> None:
     assert beside(change, "stage") == []
 
 
+@pytest.mark.parametrize(
+    ("from_K", "together", "stage", "seconds"),
+    [
+        # ramp over at 1230 s, stage back at 2130 s; its own cooling goes beside the ramp and counts towards that
+        (0.16, ["field", "temperature"], [("cool", 0, 1800), ("settle stage", 1800, 2130)], 2130),
+        (0.04, ["field", "temperature"], [("cool", 0, 600), ("settle stage", 1230, 2130)], 2130),
+        (1.0, ["field", "temperature"], [("cool", 0, 3600)], 3600),
+        # cooling first, then the field; or the field first, settled at 1350 s, and then cooling
+        (0.04, ["temperature"], [("cool", 0, 600), ("settle stage", 1830, 2730)], 2730),
+        (0.04, ["field"], [("cool", 1350, 1950), ("settle stage", 1950, 2130)], 2130),
+    ],
+)
+def test_the_stage_settles_once_after_the_last_ramp(
+    from_K: float, together: list[str], stage: list[tuple[str, int, int]], seconds: int
+) -> None:
+    (change,) = moved(state_at(0, from_K), state_at(6, BASE), {"policies": {"together": together}})
+    assert beside(change, "stage") == stage
+    assert change.seconds == seconds
+
+
 def test_a_change_of_temperature_or_gates_alone_moves_no_field() -> None:
     (warmer,) = moved(state_at(6), state_at(6, MILD))
     assert coil_actions(warmer) == [("hold", 600)]

@@ -87,7 +87,7 @@ def test_the_table_is_every_move(name: str, together: list[str]) -> None:
 
 
 def test_a_reversal_that_ends_a_run_down_keeps_the_reserve_as_the_leg_does() -> None:
-    """From -8 T to zero with a unipolar supply: the run-down asks for nothing, the reversal after it for the reserve."""
+    """From -8 T to zero with a unipolar supply: the run-down asks for nothing, the reversal for the reserve."""
     machine = rig(RIGS["unipolar, settle 0"])
     setup, lines = setup_of(machine, week()), Lines(machine)
     states = [state_at(-8), state_at(0)]

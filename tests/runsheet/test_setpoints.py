@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 from planner.plan import Coil, CoilMode, Leg, Plan, along_z
 from planner.runsheet.setpoints import coil_set_points, gate_lines, joined, mode_change
 from planner.runsheet.wording import WallTimes
@@ -80,6 +82,13 @@ def test_gates_moved_swept_and_held() -> None:
         "chip 2/top sweep 0.4 → −1 V at 5 mV/s",
         "chip 1/top −0.5 V",
     )
+
+
+def test_a_gate_move_without_a_rate_says_how_long_it_takes() -> None:
+    build = Builder().gate_sweep("Map", 3600, "chip 2/top", (0.4, -1.0))
+    step = build.steps[0]
+    slow = replace(step, legs=tuple(replace(leg, rate=None) for leg in step.legs))
+    assert gate_lines(slow)[1] == "chip 2/top sweep 0.4 → −1 V in 30 min"
 
 
 def test_many_gate_moves_are_cut_and_it_is_said() -> None:

@@ -10,8 +10,9 @@ from typing import Any, NamedTuple
 import numpy as np
 
 from planner.optimise.compiled.decode import EARNED, MUSTS, PLACE, TIME, States, build_states, extend, retract
+from planner.optimise.compiled.fitting import OK
 from planner.optimise.compiled.jit import entry, kernel
-from planner.optimise.compiled.step import END_NODE, OK, step
+from planner.optimise.compiled.step import END_NODE, step
 from planner.optimise.problem import Floats, Ints
 from planner.optimise.tables import MUST, PRIZE, Scratch, Tables, build_scratch
 

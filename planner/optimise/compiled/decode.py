@@ -10,8 +10,9 @@ from typing import Any, NamedTuple
 
 import numpy as np
 
+from planner.optimise.compiled.fitting import HORIZON, OK, PRECEDENCE, TOO_OFTEN, TWICE
 from planner.optimise.compiled.jit import entry, kernel
-from planner.optimise.compiled.step import END_NODE, HORIZON, OK, PRECEDENCE, TOO_OFTEN, TWICE, step
+from planner.optimise.compiled.step import END_NODE, step
 from planner.optimise.problem import Floats, Ints
 from planner.optimise.tables import (
     BEFORE_FIRST,

@@ -5,12 +5,22 @@
 
 from __future__ import annotations
 
-import math
 from typing import Any
 
-import numpy as np
-
+from planner.optimise.compiled.fitting import (
+    HORIZON,
+    LOW,
+    NO_INTERVAL,
+    OK,
+    TOLERANCE,
+    arrived,
+    chain_starts,
+    fail,
+    fit,
+    fit_latest,
+)
 from planner.optimise.compiled.jit import kernel
+from planner.optimise.compiled.refill import pour, refill_start
 from planner.optimise.tables import (
     AFTER,
     ARC_START,
@@ -21,201 +31,24 @@ from planner.optimise.tables import (
     ENTRY,
     EXIT,
     FIRST,
-    MIN_POUR,
     MOVING,
-    NEED_FULL,
     NODE_SECONDS,
     NODE_START,
     PLACE_MIN,
     PLACE_RATE,
     PRICE,
     REFILL,
-    REFILL_TO,
     SECONDS,
-    SECONDS_PER_UNIT,
     SHIFTED,
-    SOURCE,
     SOURCE_FIXED,
     SOURCE_PER_UNIT,
     START_MIN,
     USE,
     WAIT_MIN,
-    WAIT_OK,
     WAIT_RATE,
 )
 
-TOLERANCE = 1e-9
-OK, HORIZON, NO_INTERVAL, LOW, SOURCE_LOW, TOO_FULL, PRECEDENCE, TWICE, TOO_OFTEN = range(9)
 END_NODE = 1
-NEVER = 1 << 60
-
-
-@kernel
-def fit(T: Any, calendar: int, moment: int, seconds: int) -> int:
-    """Earliest start from ``moment`` on at which ``seconds`` lie inside one interval of ``calendar``; -1 if none."""
-    if calendar < 0:
-        return moment
-    low = T.calendar[calendar, 0]
-    last = T.calendar[calendar, 1]
-    high = last
-    while low < high:
-        middle = (low + high) // 2
-        if T.interval[middle, 1] < moment + seconds:
-            low = middle + 1
-        else:
-            high = middle
-    while low < last:
-        start = max(moment, T.interval[low, 0])
-        if start + seconds <= T.interval[low, 1]:
-            return int(start)
-        low += 1
-    return -1
-
-
-@kernel
-def fit_latest(T: Any, calendar: int, limit: int, seconds: int, floor: int) -> int:
-    """Latest start at or after ``floor`` (which fits) so that ``seconds`` end by ``limit`` inside one interval."""
-    if calendar < 0:
-        return limit - seconds
-    row = T.calendar[calendar, 1] - 1
-    while row >= T.calendar[calendar, 0]:
-        start = min(limit, T.interval[row, 1]) - seconds
-        if start <= floor:
-            return floor
-        if start >= T.interval[row, 0]:
-            return int(start)
-        row -= 1
-    return floor
-
-
-@kernel
-def arrived(T: Any, reservoir: int, after: int, until: int) -> float:
-    """What arrives in ``reservoir`` after second ``after`` and up to ``until``."""
-    total = 0.0
-    for row in range(T.arrivals_of[reservoir, 0], T.arrivals_of[reservoir, 1]):
-        if after < T.arrival[row, 0] <= until:
-            total += T.arrival[row, 1]
-    return total
-
-
-@kernel
-def fail(W: Any, block: int, reservoir: int, moment: int, short: float) -> None:
-    """Write down why a step failed."""
-    W.failure[0] = block
-    W.failure[1] = reservoir
-    W.failure[2] = moment
-    W.amount[1] = short
-
-
-@kernel
-def chain_starts(T: Any, W: Any, node: int, moment: int) -> int:
-    """Set the starts of a node that pours nothing; returns its end, or minus the failure."""
-    first = T.node[node, FIRST]
-    count = T.node[node, COUNT]
-    at = moment
-    link = 0
-    while link < count:
-        last = link
-        while last < count - 1 and T.block[first + last, WAIT_OK] == 0:
-            last += 1
-        row = link
-        start = at
-        while row <= last:
-            seconds = T.block[first + row, SECONDS]
-            found = fit(T, T.block[first + row, CALENDAR], at, seconds)
-            if found < 0 or found + seconds > T.horizon:
-                fail(W, row, -1, at, 0.0)
-                return -NO_INTERVAL if found < 0 else -HORIZON
-            if found > at and row > link:
-                start += found - at
-                at = start
-                row = link
-                continue
-            if row == link:
-                start = found
-            W.time[NODE_START, row] = found
-            W.time[NODE_SECONDS, row] = seconds
-            at = found + seconds
-            row += 1
-        link = last + 1
-    return at
-
-
-@kernel
-def level_after_arc(T: Any, W: Any, reservoir: int, place: int, node: int, moment: int, level: float) -> float:
-    """Level of one reservoir at the end of the arc just set, rules not looked at."""
-    target = T.node[node, ENTRY]
-    first = T.arc[place, target, 0]
-    at = moment
-    for row in range(T.arc[place, target, 1]):
-        rate = T.place[place, PLACE_RATE, reservoir] if row == 0 else T.rule[first + row - 1, WAIT_RATE, reservoir]
-        start = W.time[ARC_START, row]
-        end = start + T.block[first + row, SECONDS]
-        level += arrived(T, reservoir, at, end) - rate * (start - at) - T.rule[first + row, USE, reservoir]
-        at = end
-    return level
-
-
-@kernel
-def pour_length(T: Any, node: int, poured: float) -> int:
-    """Seconds of a refill that pours ``poured``."""
-    fixed = T.block[T.node[node, FIRST], SECONDS]
-    return int(np.ceil(fixed + T.pour[node, SECONDS_PER_UNIT] * max(poured, 0.0) - 1e-6))
-
-
-@kernel
-def source_has(T: Any, node: int, level: float) -> float:
-    """How much a source at ``level`` can pour."""
-    left = level - T.pour[node, SOURCE_FIXED]
-    if T.pour[node, SOURCE_PER_UNIT] > 0.0:
-        return float(left / T.pour[node, SOURCE_PER_UNIT])
-    return math.inf if left >= -TOLERANCE else -math.inf
-
-
-@kernel
-def refill_start(T: Any, W: Any, node: int, place: int, moment: int, at: int, levels: Any, given: int) -> int:
-    """Set the starts of a refill whose arc ends at ``at``; returns that start, or minus the failure."""
-    reservoir = T.node[node, REFILL]
-    source = T.node[node, SOURCE]
-    target = T.node[node, ENTRY]
-    calendar = T.block[T.node[node, FIRST], CALENDAR]
-    waits_in = target if T.arc[place, target, 1] > 0 else place
-    level_there = level_after_arc(T, W, reservoir, place, node, moment, levels[given, reservoir])
-    source_there = 0.0
-    if source >= 0:
-        source_there = level_after_arc(T, W, source, place, node, moment, levels[given, source])
-    start = at
-    while start <= T.horizon:
-        now = level_there + arrived(T, reservoir, at, start) - T.place[waits_in, PLACE_RATE, reservoir] * (start - at)
-        room = T.pour[node, REFILL_TO] - now
-        have = math.inf
-        if source >= 0:
-            burnt = T.place[waits_in, PLACE_RATE, source] * (start - at)
-            have = source_has(T, node, source_there + arrived(T, source, at, start) - burnt)
-        need = room if T.node[node, NEED_FULL] == 1 else T.pour[node, MIN_POUR]
-        agrees = have >= need - TOLERANCE
-        seconds = pour_length(T, node, min(room, have) if agrees else 0.0)
-        if agrees and fit(T, calendar, start, seconds) == start:
-            W.time[NODE_START, 0] = start
-            return start
-        after = NEVER
-        for other in (reservoir, source):
-            if other >= 0:
-                for row in range(T.arrivals_of[other, 0], T.arrivals_of[other, 1]):
-                    if T.arrival[row, 0] > start:
-                        after = min(after, int(T.arrival[row, 0]))
-                        break
-        if calendar >= 0:
-            for row in range(T.calendar[calendar, 0], T.calendar[calendar, 1]):
-                if T.interval[row, 0] > start:
-                    after = min(after, T.interval[row, 0])
-                    break
-        if after == NEVER:
-            fail(W, T.arc[place, target, 1], source, start, 0.0 if agrees else need - have)
-            return -NO_INTERVAL if agrees else -SOURCE_LOW
-        start = after
-    fail(W, T.arc[place, target, 1], -1, start, 0.0)
-    return -HORIZON
 
 
 @kernel
@@ -261,33 +94,6 @@ def shift_waits(T: Any, W: Any, node: int, place: int, moment: int, keep: int) -
     burn += priced(T, T.place, target, PLACE_RATE) * (keep - end)
     burn_shifted += priced(T, T.place, target, PLACE_RATE) * (keep - end_shifted)
     return bool(burn_shifted < burn - TOLERANCE)
-
-
-@kernel
-def pour(T: Any, W: Any, node: int, block: int, start: int, level: Any) -> int:
-    """Draw from the source for the refill at ``start``; sets its amount and length."""
-    reservoir = T.node[node, REFILL]
-    source = T.node[node, SOURCE]
-    room = T.pour[node, REFILL_TO] - level[reservoir]
-    have = source_has(T, node, level[source]) if source >= 0 else math.inf
-    least = max(T.pour[node, MIN_POUR], 0.0)
-    if room < least - TOLERANCE:
-        fail(W, block, reservoir, start, least - room)
-        return TOO_FULL
-    need = room if T.node[node, NEED_FULL] == 1 else least
-    if have < need - TOLERANCE:
-        fail(W, block, source, start, need - have)
-        return SOURCE_LOW
-    poured = max(min(room, have), 0.0)
-    seconds = pour_length(T, node, poured)
-    if fit(T, T.block[T.node[node, FIRST], CALENDAR], start, seconds) != start:
-        fail(W, block, -1, start, 0.0)
-        return NO_INTERVAL
-    if source >= 0:
-        level[source] -= T.pour[node, SOURCE_FIXED] + T.pour[node, SOURCE_PER_UNIT] * poured
-    W.amount[0] = poured
-    W.time[NODE_SECONDS, 0] = seconds
-    return OK
 
 
 @kernel

@@ -13,8 +13,9 @@ from typing import Any
 
 import numpy as np
 
-from planner.optimise.compiled.anneal import Moves, anneal, build_search
+from planner.optimise.compiled.anneal import anneal
 from planner.optimise.compiled.branch import branch, build_branch
+from planner.optimise.compiled.changes import Moves, build_search
 from planner.optimise.compiled.decode import build_states, evaluate
 from planner.optimise.compiled.jit import Plain, cache_is_warm
 from planner.optimise.problem import Blocks, Calendars, Problem, Reservoirs, Services
@@ -31,6 +32,15 @@ class Compiled:
     evaluate = staticmethod(evaluate)
 
 
+def kernels_now() -> Any:
+    """Compiled kernels if they can be had without a long wait, else plain ones."""
+    return Compiled if _warm() else Plain()
+
+
+def _warm() -> bool:
+    return all(cache_is_warm(name) for name in ("anneal", "branch", "evaluate"))
+
+
 class Warmer:
     """Kernels for now: plain ones until the compiled ones are there, then those.
 
@@ -39,7 +49,7 @@ class Warmer:
 
     def __init__(self) -> None:
         self.plain = Plain()
-        self._ready = cache_is_warm("anneal") and cache_is_warm("branch")
+        self._ready = _warm()
         self._child: subprocess.Popen[bytes] | None = None
         if not self._ready:
             root = str(Path(__file__).parents[3])
@@ -56,8 +66,9 @@ class Warmer:
     def ready(self) -> bool:
         """Whether compiled kernels can be called without a long wait."""
         if not self._ready and self._child is not None and self._child.poll() is not None:
-            # a child that failed (no folder for the cache) leaves the compiling to this process
-            self._ready = True
+            # without a folder for the cache plain kernels have to do: compiling here would break every time budget
+            self._ready = self._child.returncode == 0 and _warm()
+            self._child = None
         return self._ready
 
     @property

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -60,10 +60,18 @@ class Model:
         return counted / COST_SCALE + self.base
 
 
-def build_model(problem: Problem, tables: Tables, costs: Costs, bound: Floors, *, musts: bool = True) -> Model:
-    """Variables, constraint families and the two objectives."""
+def build_model(
+    problem: Problem,
+    tables: Tables,
+    costs: Costs,
+    bound: Floors,
+    *,
+    musts: bool = True,
+    halt: Callable[[], bool] = lambda: False,
+) -> Model:
+    """Variables, constraint families and the two objectives; raises `CancelledError` soon after ``halt`` is true."""
     model = cp_model.CpModel()
-    variables = build_variables(problem, tables, costs, model)
+    variables = build_variables(problem, tables, costs, model, halt)
     routing.build(variables, musts=musts)
     spans.build(variables)
     levels.build(variables)

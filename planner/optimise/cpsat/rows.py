@@ -19,6 +19,7 @@ def total(
 
     ``end`` is added once; the arc from start to end directly counts as nothing else being done.
     """
+    variables.breathe()
     leave, enter = variables.places()
     literals: list[Any] = [literal for _, _, literal in variables.arcs]
     weights = [math.floor(w * scale + 1e-9) for w in np.asarray(arc)[leave, enter].tolist()] if leave else []

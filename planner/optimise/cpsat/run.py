@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import contextlib
 import threading
 import time
 from collections.abc import Callable
@@ -10,13 +11,13 @@ from ortools.sat.python import cp_model
 
 from planner.optimise.bounds import Floors
 from planner.optimise.cpsat.model import Model, build_model
-from planner.optimise.cpsat.variables import Variables
+from planner.optimise.cpsat.variables import CancelledError, Variables
 from planner.optimise.incumbent import Incumbent
 from planner.optimise.moves import Costs
 from planner.optimise.problem import Problem
 from planner.optimise.tables import Tables
 
-MOST_VERTICES = 420  # beyond, building the model alone takes longer than it brings
+MOST_NODES = 420  # beyond, building the model alone takes longer than it brings
 
 
 class BrokenModelError(AssertionError):
@@ -81,9 +82,14 @@ class Relaxation:
 
     def run(self) -> None:
         """Stage 1: bound the prize. Stage 2: bound the cost at the prize reached."""
-        if self._problem.nodes > MOST_VERTICES:
+        if self._problem.nodes > MOST_NODES:
             return
-        model = build_model(self._problem, self._tables, self._costs, self._floors)
+        with contextlib.suppress(CancelledError):
+            self._stages()
+
+    def _stages(self) -> None:
+        cancelled = self._cancelled.is_set
+        model = build_model(self._problem, self._tables, self._costs, self._floors, halt=cancelled)
         if not self._incumbent.prize_proven:
             self._most_prize(model, 0.5)
         while not self._cancelled.is_set() and not self._incumbent.proven_infeasible:

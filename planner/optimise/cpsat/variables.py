@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import itertools
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, field
 
 import numpy as np
@@ -13,6 +13,11 @@ from planner.optimise.bounds import most_poured
 from planner.optimise.moves import Costs
 from planner.optimise.problem import Problem
 from planner.optimise.tables import MAX_USES, REFILL, SECONDS_PER_UNIT, Tables
+
+
+class CancelledError(Exception):
+    """Building was asked to stop."""
+
 
 POUR_SCALE = 100  # poured amounts are counted in hundredths of a unit, rounded down
 DEPOT = 0  # vertex that stands for start and end
@@ -35,6 +40,12 @@ class Variables:
     poured: dict[int, cp_model.IntVar] = field(default_factory=dict)
     arcs: list[tuple[int, int, cp_model.IntVar]] = field(default_factory=list)
     nothing: cp_model.IntVar | None = None
+    halt: Callable[[], bool] = lambda: False
+
+    def breathe(self) -> None:
+        """Called now and then while the model is built: raises `CancelledError` if that is to stop."""
+        if self.halt():
+            raise CancelledError
 
     def visits(self, take: int) -> list[cp_model.IntVar]:
         """Literals of the vertices that do ``take``."""
@@ -65,14 +76,18 @@ class Variables:
         path = [DEPOT, *(free[node].pop() for node in order), DEPOT]
         steps = set(itertools.pairwise(path))
         self.model.clear_hints()
-        for a, b, literal in self.arcs:
+        for row, (a, b, literal) in enumerate(self.arcs):
+            if row % 5000 == 0:
+                self.breathe()
             self.model.add_hint(literal, (a, b) in steps)
         for v, done in enumerate(self.done):
             if v:
                 self.model.add_hint(done, v in path)
 
 
-def build_variables(problem: Problem, tables: Tables, costs: Costs, model: cp_model.CpModel) -> Variables:
+def build_variables(
+    problem: Problem, tables: Tables, costs: Costs, model: cp_model.CpModel, halt: Callable[[], bool]
+) -> Variables:
     """Vertices, arcs that may be part of an order, pours."""
     variables = Variables(problem, tables, costs, model, [Problem.START], [0], [model.new_constant(1)])
     for node in range(2, problem.nodes):
@@ -84,6 +99,7 @@ def build_variables(problem: Problem, tables: Tables, costs: Costs, model: cp_mo
             if tables.node[node, REFILL] >= 0:
                 top = int(min(max(_most(problem, tables, node), 0.0) * POUR_SCALE, 1e9)) + 1
                 variables.poured[vertex] = model.new_int_var(0, top, f"poured {node} {copy}")
+    variables.halt = halt
     possible = _possible(variables)
     variables.arcs = [(a, b, model.new_bool_var("")) for a, b in np.argwhere(possible).tolist()]
     return variables
