@@ -31,7 +31,7 @@ def possible_times(view: WeekView, target: AnyTarget) -> Iterator[tuple[str, Spa
         yield f"the slots of {user.name}", times
     taken = united(view.span(slot) for other in view.week.users if other is not user for slot in other.slots)
     if taken:
-        yield "what other users' slots leave", less(times, taken)
+        yield "what the slots of others leave", less(times, taken)
 
 
 def first_too_short(view: WeekView, target: AnyTarget) -> tuple[str, float, float] | None:

@@ -49,6 +49,11 @@ def filling_name(value: float) -> str:
     return f"{value:.4f}".rstrip("0")
 
 
+def temperature_name(kelvin: float) -> str:
+    """A temperature as the trade writes it: "42 mK" below 1 K, "1.5 K" from there on."""
+    return f"{kelvin:.4g} K" if kelvin >= 1 else f"{kelvin * 1e3:.4g} mK"
+
+
 @dataclass(frozen=True, slots=True)
 class Range:
     """Two ends in the order written, and their text."""

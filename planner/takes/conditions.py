@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from planner.files.asks import filling_name
+from planner.files.asks import filling_name, temperature_name
 from planner.files.rig import Rig
 from planner.files.start import charge_of, driven_coil, persistent_coil
 from planner.files.targets import Target
@@ -102,7 +102,8 @@ def checked_kelvin(rig: Rig, kelvin: float, highest_K: float | None = None) -> f
     """The temperature itself; raises CannotError where the stage cannot hold it."""
     base, highest = float(rig.stage.base_K), float(rig.stage.highest_K) if highest_K is None else highest_K
     if not base <= kelvin <= highest:
-        raise CannotError(f"{kelvin * 1e3:g} mK: this stage holds {base * 1e3:g} mK to {highest * 1e3:g} mK")
+        reach = f"{temperature_name(base)} to {temperature_name(highest)}"
+        raise CannotError(f"{temperature_name(kelvin)}: this stage holds {reach}")
     return float(kelvin)
 
 

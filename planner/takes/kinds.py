@@ -9,7 +9,7 @@ from typing import Any
 
 import numpy as np
 
-from planner.files.asks import Range
+from planner.files.asks import Range, temperature_name
 from planner.files.targets import FieldSweep, GateSweep, Hold, Map, OtherWork, Target, TemperatureSeries
 from planner.moves import delayed, end_of, field_legs, held, joined, warming_leg, whole_seconds
 from planner.physics.lockin import honest_rate_T_per_s
@@ -62,7 +62,7 @@ def temperature_series(context: Context, ask: TemperatureSeries) -> Iterator[Tak
     field_T, notes = within_reach(context.rig, asked)
     for number, written in enumerate(ask.temperatures_K, 1):
         kelvin = checked_kelvin(context.rig, float(written))
-        label = f"{asked.text} at {kelvin * 1e3:g} mK"
+        label = f"{asked.text} at {temperature_name(kelvin)}"
         ways = _stays(context, ask, label, field_T, kelvin, ask.duration_s, ask.coil)
         yield _take(context, ask, label, ways, f"{ask.name} · {number}", notes)
 

@@ -15,6 +15,9 @@ from planner.physics.fillings import FLUX_QUANTUM_T_m2, fillings_to_list
 from planner.plan import Finding, Kind
 
 EXACT = 1e-9
+LARGEST_DENOMINATOR = 7
+"""Offers are fillings strong enough to be worth a change of plan (common practice, no source)."""
+
 RATED = register(
     Rule(
         "rated field",
@@ -128,10 +131,11 @@ def filling_in_reach(view: WeekView) -> Iterator[Finding]:
             continue
         worst = max(beyond, key=_least)
         offers = reachable_offers(view, target, worst.nominal_T)
-        density, _ = density_per_m2(view.week.sample(target.sample), target)
+        density, error = density_per_m2(view.week.sample(target.sample), target)
+        least = " even at the lowest density its error allows" if error else ""
         yield REACH.finding(
             f'"{target.name}" needs {tesla(worst.nominal_T)} at a density of {number(abs(density) / 1e15)}e11 cm^-2; '
-            f"the magnet ends at {tesla(rated)}, {tesla(_least(worst) - rated)} short.",
+            f"the magnet ends at {tesla(rated)}, {tesla(_least(worst) - rated)} short{least}.",
             value=_least(worst),
             most=rated,
             unit="T",
@@ -147,7 +151,11 @@ def reachable_offers(view: WeekView, target: AnyTarget, needed_T: float) -> str:
     density, _ = density_per_m2(sample, target)
     filling = density * FLUX_QUANTUM_T_m2 / needed_T
     sign = 1 if filling > 0 else -1
-    reach = [(abs(density) * FLUX_QUANTUM_T_m2 / float(nu), sign * float(nu)) for nu in fillings_to_list()]
+    reach = [
+        (abs(density) * FLUX_QUANTUM_T_m2 / float(nu), sign * float(nu))
+        for nu in fillings_to_list()
+        if nu.denominator <= LARGEST_DENOMINATOR
+    ]
     nearest = sorted((field, nu) for field, nu in reach if field <= rated)[-3:][::-1]
     offers = [f"ν = {filling_name(nu)} at {number(field)} T" for field, nu in nearest]
     most_density = abs(filling) * rated / FLUX_QUANTUM_T_m2

@@ -35,7 +35,7 @@ def leg_litres(view: PlanView) -> Iterator[Finding]:
     """Each coil leg's litres are what its time, mode, leads and field change burn; other legs burn nothing."""
     for item in view.placed:
         own = item.before_L - item.after_L
-        if abs(item.leg.litres - own) > EXACT_L:
+        if not abs(item.leg.litres - own) <= EXACT_L:  # so that a claim that is no number fails too
             yield BOOK.finding(
                 f'{item.step.label}: the leg "{item.leg.action}" from {view.wall(item.leg.start_s)} burns {own:.4f} L; '
                 f"the plan says {item.leg.litres:.4f} L.",

@@ -193,9 +193,8 @@ def room_for_a_take(view: WeekView) -> Iterator[Finding]:
             continue
         why, longest, needed = short
         yield WINDOW.finding(
-            f'"{target.name}" needs {length(needed)} in one piece; the longest that {why} leave'
-            f"{'s' if why == 'the week' else ''} between {view.wall(0)} and {view.wall(view.horizon_s)} is "
-            f"{length(longest)}.",
+            f'"{target.name}" needs {length(needed)} in one piece; the longest stretch in {why} is {length(longest)}, '
+            f"between {view.wall(0)} and {view.wall(view.horizon_s)}.",
             kind=FITS.kind if why == "the week" else WINDOW.kind,
             value=longest / 60,
             least=needed / 60,

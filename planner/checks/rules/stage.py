@@ -108,6 +108,8 @@ def temperature_time(view: PlanView) -> Iterator[Finding]:
 
 
 def _given(view: PlanView, step: Step, first: float, last: float, seconds: int, at_s: int) -> Iterator[Finding]:
+    if min(first, last) <= 0:
+        return  # the rule "temperature range" says it
     needed = least_seconds(view.rig.stage, first, last)
     if seconds >= needed - 1e-6:
         return

@@ -247,12 +247,12 @@ def _emptied(view: WeekView, bath: Bath, target: Target, mode: str, field: float
         allowed = "" if view.rig.policies.unattended_persistent else ", which this site does not allow unattended"
         good = "ends at" if kept >= view.line_L(line) else "still only ends at"
         offer = f"; persistent with the leads down{allowed} it {good} {view.reads(kept)}"
+    how = ", driven," if mode == "driven" or persistent is not None else ""
     when = f"{view.wall(start_s + after_s)}, " if not start_s else ""
     yield AT_FIELD.finding(
-        f'"{target.name}": {length(total)} {tesla(field)} {"driven " if mode == "driven" or persistent else ""}from '
-        f"{view.reads(start_L)} of helium pass the floor at field, {percent(line)}, {when}{length(after_s)} "
-        "after the ramp begins, "
-        f"and would end at {view.reads(end_L)}{_at_end(view, start_s, total)}.",
+        f'"{target.name}": {length(total)} at {tesla(field)}{how} from {view.reads(start_L)} of helium pass the floor '
+        f"at field, {percent(line)}, {when}{length(after_s)} after the ramp begins, and would end at {view.reads(end_L)}"
+        f"{_at_end(view, start_s, total)}.",
         value=view.trusted(end_L),
         least=line,
         unit="%",
