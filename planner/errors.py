@@ -35,7 +35,12 @@ class Problem:
         place = f"{self.file}: {self.where}" if self.where else self.file
         found = f" is {self.value}" if self.value else ""
         hint = f" ({self.hint})" if self.hint else ""
-        return f"{place}{found}: {self.expected}{hint}"
+        return printable(f"{place}{found}: {self.expected}{hint}")
+
+
+def printable(text: str) -> str:
+    """The text on one line, with whatever could steer a terminal written as an escape."""
+    return "".join(sign if sign.isprintable() else sign.encode("unicode_escape").decode() for sign in text)
 
 
 class InputError(PlannerError, ValueError):

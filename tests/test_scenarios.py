@@ -183,9 +183,10 @@ must = true
 
 def test_weekend_driven_at_12_T_is_refused_with_the_crossing(tmp_path: Path) -> None:
     asked = request(tmp_path, FRIDAY, MONDAY, 'level = "100 %"', STAY)
-    # driven throughout it would end at 100 % − (1.2 + 69 · 0.9) / 0.8 = 20.9 %; the trusted level, reading − 2 %, crosses
-    # 40 % when 58 % of 80 L are gone: (46.4 − 1.2) / 0.9 = 50.2 h, Sunday about 14:00
-    assert 100 - (1.2 + 69 * 0.9) / 0.8 == pytest.approx(20.9, abs=0.05)
+    # driven throughout it would end at 100 % − (1.2 + 69 · 0.9) / 0.8 = 20.9 %; the trusted level, reading − 2 %,
+    # crosses 40 % when 58 % of 80 L are gone: (46.4 − 1.2) / 0.9 = 50.2 h, Sunday about 14:00
+    left = 100 - (1.2 + 69 * 0.9) / 0.8
+    assert left == pytest.approx(20.9, abs=0.05)
     found = " ".join(f"{f.text} {f.mend}" for f in stops(check_week(asked)))
     assert "Sun 14:" in found
     assert "persistent" in found
@@ -251,7 +252,8 @@ def test_fast_sweep_takes_what_the_magnet_allows(tmp_path: Path) -> None:
     told = " ".join(f"{f.text} {f.mend}" for f in (*check_week(asked), *plan.findings))
     assert "59.2" in told  # the magnet alone, one way
     assert "26.1 mT/min" in told  # what 20 mT, ten points and 99 % of a 1 s pole allow: 20 / (10 · 4.605 s)
-    assert 20e-3 / (10 * 4.60517) * 60 * 1e3 == pytest.approx(26.06, abs=0.01)
+    rate_T_per_s = 20e-3 / (10 * 4.60517)
+    assert rate_T_per_s * 60e3 == pytest.approx(26.06, abs=0.01)
 
 
 def test_survey_and_windows_are_what_the_expert_offers(tmp_path: Path) -> None:

@@ -1,4 +1,4 @@
-"""A small sheet recomputed by hand from its rig file, step by step. Every number on the right is worked out in place."""
+"""A small sheet recomputed by hand from its rig file, step by step: every number is worked out in place."""
 
 from __future__ import annotations
 

@@ -25,11 +25,10 @@ def possible_times(view: WeekView, target: AnyTarget) -> Iterator[tuple[str, Spa
         times = shared(times, view.people_there(count, training))
         yield STAFFED, times
     user = view.week.user(view.user_of(target))
-    own = united(view.span(slot) for slot in user.slots)
     if user.only_in_slots:
-        times = shared(times, own)
+        times = shared(times, view.slots[user.name])
         yield f"the slots of {user.name}", times
-    taken = united(view.span(slot) for other in view.week.users if other is not user for slot in other.slots)
+    taken = united(slot for other in view.week.users if other is not user for slot in view.slots[other.name])
     if taken:
         yield "what the slots of others leave", less(times, taken)
 

@@ -101,6 +101,11 @@ class WeekView:
         transfer = self.bath.transfer
         return float(transfer.line_cooling_s) + transfer.least_pour_L / transfer.rate_L_per_s
 
+    @cached_property
+    def slots(self) -> dict[str, Spans]:
+        """The slots of each user, by name."""
+        return {user.name: united(self.span(slot) for slot in user.slots) for user in self.week.users}
+
     def span(self, entry: object) -> Span:
         """Begin and end of a span of the week file, in seconds."""
         return self.week.seconds(entry)  # type: ignore[arg-type]

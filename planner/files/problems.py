@@ -8,6 +8,7 @@ from pydantic import BaseModel, ValidationError
 from pydantic_core import ErrorDetails
 
 from planner.errors import Problem
+from planner.files.limits import MOST_PROBLEMS
 from planner.files.model import Table
 from planner.files.references import nearest
 from planner.files.targets import TARGET_KINDS
@@ -19,6 +20,7 @@ _EXPECTED = {
     "int_type": "expected a whole number",
     "int_parsing": "expected a whole number",
     "int_from_float": "expected a whole number",
+    "int_parsing_size": "expected a whole number",
     "bool_type": "expected true or false",
     "bool_parsing": "expected true or false",
     "greater_than_equal": "expected at least {ge}",
@@ -36,8 +38,8 @@ _PATTERNS = {"^[A-Z]$": "expected one capital letter"}
 
 
 def problems_of(error: ValidationError, model: type[BaseModel], file: str) -> list[Problem]:
-    """Every problem of a file, one for each thing to mend."""
-    details = error.errors(include_url=False)
+    """Every problem of a file, one for each thing to mend; of very many the first `MOST_PROBLEMS`."""
+    details = error.errors(include_url=False)[:MOST_PROBLEMS]
     return [
         _problem(file, model, detail)
         for detail in details

@@ -11,6 +11,7 @@ from typing import Any, Literal, TypeVar
 from pydantic import BaseModel, ValidationError
 
 from planner.errors import InputError, Problem
+from planner.files.limits import DEEPEST, LARGEST_FILE, MOST_TARGETS, size_problems, too_deep
 from planner.files.problems import problems_of, shown
 from planner.files.references import nearest, reference_problems
 from planner.files.rig import Rig
@@ -18,9 +19,6 @@ from planner.files.targets import FieldSweep, GateSweep, Map
 from planner.files.versions import migrate
 from planner.files.week import Week
 from planner.plan import Source
-
-LARGEST_FILE = 2_000_000
-MOST_TARGETS = 2000
 
 _Model = TypeVar("_Model", bound=BaseModel)
 _Role = Literal["week", "rig"]
@@ -60,11 +58,7 @@ def read_week(path: Path | str) -> Request:
         raise InputError([*error.problems, *problems]) from None
     if rig is None or rig_path is None:
         raise InputError(problems)
-    problems = _fit_problems(week, rig, path.name)
-    if problems:
-        raise InputError(problems)
-    sources = (source("week", path.name, text), source("rig", week.rig, rig_text))
-    return Request(week, rig, sources)
+    return _fitting(week, rig, (source("week", path.name, text), source("rig", week.rig, rig_text)))
 
 
 def read_rig(path: Path | str) -> tuple[Rig, Source]:
@@ -75,10 +69,19 @@ def read_rig(path: Path | str) -> tuple[Rig, Source]:
 
 
 def request_of(sources: tuple[Source, ...]) -> Request:
-    """The week and rig whose texts a plan carries; raises InputError if they cannot be read."""
+    """The week and rig of these texts, which a plan carries; raises InputError as `read_week` does."""
     texts = {item.role: item for item in sources}
+    if len(sources) != 2 or texts.keys() != {"week", "rig"}:
+        raise InputError([Problem("plan", "sources", "", "expected one week and one rig")])
     week = parse_week(texts["week"].text, texts["week"].path)
-    return Request(week, parse_rig(texts["rig"].text, texts["rig"].path), sources)
+    return _fitting(week, parse_rig(texts["rig"].text, texts["rig"].path), sources)
+
+
+def _fitting(week: Week, rig: Rig, sources: tuple[Source, ...]) -> Request:
+    problems = _fit_problems(week, rig, next(source.path for source in sources if source.role == "week"))
+    if problems:
+        raise InputError(problems)
+    return Request(week, rig, sources)
 
 
 def source(role: _Role, path: str, text: str) -> Source:
@@ -129,12 +132,16 @@ def _text_of(path: Path) -> str:
 
 
 def _toml(text: str, file: str) -> dict[str, Any]:
+    if too_deep(text):
+        raise InputError([Problem(file, "", "", f"a key has more than {DEEPEST} parts")])
     try:
         data = tomllib.loads(text.removeprefix("\ufeff"))  # some editors put a byte-order mark first
     except (tomllib.TOMLDecodeError, RecursionError, ValueError) as error:
         raise InputError([Problem(file, "", "", f"not valid TOML: {error}")]) from None
     if not data:
         raise InputError([Problem(file, "", "", "the file is empty")])
+    if problems := size_problems(data, file):
+        raise InputError(problems)
     return data
 
 
@@ -191,7 +198,20 @@ def _fit_problems(week: Week, rig: Rig, file: str) -> list[Problem]:
         problems.append(Problem(file, "present.coil", '"persistent"', "this rig has no persistent switch"))
     if rig.magnet.switch is None and week.wanted_end.coil == "persistent":
         problems.append(Problem(file, "wanted_end.coil", '"persistent"', "this rig has no persistent switch"))
-    return [*problems, *_pace_problems(week, file)]
+    return [*problems, *_current_problems(week, rig, file), *_pace_problems(week, file)]
+
+
+def _current_problems(week: Week, rig: Rig, file: str) -> list[Problem]:
+    """A logged persistent current that belongs to another field than the one stated: one of them is wrong."""
+    logged_A, switch = week.present.persistent_current_A, rig.magnet.switch
+    if logged_A is None or isinstance(logged_A, str) or switch is None:
+        return []
+    current_A = week.present.field_T / rig.magnet.field_per_current_T_per_A
+    if abs(logged_A - current_A) <= switch.match_A:
+        return []
+    expected = f"a field of {week.present.field_T:g} T takes {current_A:.2f} A on this rig"
+    hint = 'find out which is right, or say "unknown"; the switch stays closed until then'
+    return [Problem(file, "present.persistent_current", f"{logged_A:g} A", expected, hint)]
 
 
 def _pace_problems(week: Week, file: str) -> list[Problem]:

@@ -5,18 +5,21 @@ from __future__ import annotations
 from collections.abc import Iterator
 from datetime import datetime
 from difflib import get_close_matches
-from itertools import combinations
+from itertools import islice, takewhile
 from typing import Any
 
 from planner.clock import Clock, localise, zone
 from planner.errors import Problem
 from planner.files.hours import read_datetime
+from planner.files.limits import MOST_PROBLEMS
+
+_MOST_COMPARED = 200
 
 
 def nearest(name: str, known: list[str]) -> str:
     """A hint that offers the nearest known name, or lists them."""
     known = [one for one in known if one]
-    close = get_close_matches(name, known, n=1, cutoff=0.6)
+    close = get_close_matches(name[:200], known[:_MOST_COMPARED], n=1, cutoff=0.6)
     if close:
         return f'did you mean "{close[0]}"?'
     return "known: " + ", ".join(known[:12]) if known else ""
@@ -36,10 +39,9 @@ def _texts(value: Any) -> list[str]:
 
 
 def reference_problems(data: dict[str, Any], file: str) -> list[Problem]:
-    """Every disagreement between the parts of a week file."""
-    found = [*_twice(data, file), *_unknown(data, file), *_gates(data, file)]
-    found += [*_circles(data, file), *_times(data, file)]
-    return found
+    """Every disagreement between the parts of a week file; of very many the first `MOST_PROBLEMS`."""
+    rules = (_twice, _unknown, _gates, _circles, _times)
+    return list(islice((problem for rule in rules for problem in rule(data, file)), MOST_PROBLEMS))
 
 
 def _twice(data: dict[str, Any], file: str) -> Iterator[Problem]:
@@ -175,8 +177,9 @@ def _times(data: dict[str, Any], file: str) -> Iterator[Problem]:
             yield Problem(file, place, f"{row['from']} to {row['to']}", *read)
         elif read and place.startswith("users"):
             slots.append((*read, place))
-    for (begin, finish, place), (other_begin, other_finish, other) in combinations(sorted(slots), 2):
-        if other_begin < finish and other_finish > begin:
+    slots.sort()
+    for at, (_, finish, place) in enumerate(slots):
+        for _, _, other in takewhile(lambda slot, finish=finish: slot[0] < finish, slots[at + 1 :]):
             yield Problem(file, other, "", f"overlaps {place}; the magnet can be promised once only")
     helium = data.get("helium")
     for at, row in _tables(helium, "deliveries"):

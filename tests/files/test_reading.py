@@ -227,12 +227,29 @@ def test_one_mistake_in_a_rig(changes: Changes, says: str) -> None:
             DRY,
             "wanted_end.coil",
         ),
+        # 0.1 T/A: 6 T is 60 A; the switch may be opened within 0.1 A
+        (
+            {"present": {"level": "90 %", "field": "6 T", "coil": "persistent", "persistent_current": "59.8 A"}},
+            {},
+            "present.persistent_current",
+        ),
+        (
+            {"present": {"level": "90 %", "field": "-6 T", "coil": "persistent", "persistent_current": "60 A"}},
+            {},
+            "present.persistent_current",
+        ),
     ],
 )
 def test_a_week_must_fit_its_rig(tmp_path: Path, week_changes: Changes, rig_changes: Changes, place: str) -> None:
     with pytest.raises(InputError) as caught:
         read_week(written(tmp_path, week_text(week_changes), rig_text(rig_changes)))
     assert [problem.where for problem in caught.value.problems] == [place]
+
+
+@pytest.mark.parametrize("current", ["60 A", "59.95 A", "unknown"])
+def test_a_logged_current_may_differ_by_as_much_as_the_switch_takes(tmp_path: Path, current: str) -> None:
+    present = {"level": "90 %", "field": "6 T", "coil": "persistent", "persistent_current": current}
+    assert read_week(written(tmp_path, week_text({"present": present}), rig_text())).week.present.field_T == 6
 
 
 def test_a_pace_must_be_set_by_something(tmp_path: Path) -> None:

@@ -11,7 +11,9 @@ BATH = """
 [bath]
 gauge_error = "{error} %"
 calibration = [
-  {{ level = "0 %", volume = "0 L" }}, {{ level = "50 %", volume = "{middle} L" }}, {{ level = "100 %", volume = "60 L" }}
+  {{ level = "0 %", volume = "0 L" }},
+  {{ level = "50 %", volume = "{middle} L" }},
+  {{ level = "100 %", volume = "60 L" }},
 ]
 lines = {{ start_ramp = "50 %", at_field = "40 %", coil_top = "30 %", reserve = "15 %" }}
 losses = {{ static = "0.5 L/h", switch_open = "0.4 L/h", leads = "0.004 L/h/A", moving = "0.12 L/T" }}

@@ -152,7 +152,7 @@ def test_temperatures(written: str, kelvin: float) -> None:
 
 @pytest.mark.parametrize("written", ["10 mK", "≤ 10 mK", "1.5 K"])
 def test_temperatures_the_stage_cannot_hold(written: str) -> None:
-    assert "this stage holds 20 mK to 1000 mK" in refusal(hold(temperature=written))
+    assert "this stage holds 20 mK to 1 K" in refusal(hold(temperature=written))
 
 
 def test_a_temperature_series_is_a_take_a_temperature() -> None:
@@ -168,7 +168,7 @@ def test_a_temperature_series_is_a_take_a_temperature() -> None:
 
 def test_a_series_with_one_temperature_too_high_is_impossible_as_a_whole() -> None:
     target = wish("temperature series", field="1 T", temperatures=["20 mK", "2 K"], duration="10 min")
-    assert refusal(target) == "2000 mK: this stage holds 20 mK to 1000 mK"
+    assert refusal(target) == "2 K: this stage holds 20 mK to 1 K"
 
 
 # Other work

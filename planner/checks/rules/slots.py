@@ -6,7 +6,7 @@ from collections.abc import Iterator
 
 from planner.checks.plan_view import Placed, PlanView
 from planner.checks.registry import Rule, register
-from planner.checks.spans import lies_in, next_fit, touching, united
+from planner.checks.spans import lies_in, next_fit, touching
 from planner.checks.week_view import WeekView
 from planner.checks.wording import length, tesla
 from planner.files.week import Quiet
@@ -23,7 +23,7 @@ def user_slots(view: PlanView) -> Iterator[Finding]:
         for user in view.week.users:
             if user.name == step.user:
                 continue
-            taken = touching([view.span(slot) for slot in user.slots], step.start_s, step.end_s)
+            taken = touching(view.slots[user.name], step.start_s, step.end_s)
             if taken is not None:
                 at_s = max(taken[0], step.start_s)
                 lost = min(taken[1], step.end_s) - at_s
@@ -47,7 +47,7 @@ def _only_in_slots(
     user = next((user for user in view.week.users if user.name == name), None)
     if user is None or not user.only_in_slots:
         return
-    slots = united(view.span(slot) for slot in user.slots)
+    slots = view.slots[name]
     if not lies_in(slots, begin, end):
         follows = next_fit(slots, begin, end - begin)
         yield SLOTS.finding(

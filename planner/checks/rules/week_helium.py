@@ -7,7 +7,6 @@ from dataclasses import dataclass
 
 from planner.checks.asks import least_take_s, point_fields
 from planner.checks.burn import driven_L, quickest_ramp
-from planner.checks.registry import Rule
 from planner.checks.rules.helium_lines import AT_FIELD, COVERED, EXACT_L, RESERVE, START
 from planner.checks.spans import Spans, shared
 from planner.checks.week_view import WeekView
@@ -251,8 +250,8 @@ def _emptied(view: WeekView, bath: Bath, target: Target, mode: str, field: float
     when = f"{view.wall(start_s + after_s)}, " if not start_s else ""
     yield AT_FIELD.finding(
         f'"{target.name}": {length(total)} at {tesla(field)}{how} from {view.reads(start_L)} of helium pass the floor '
-        f"at field, {percent(line)}, {when}{length(after_s)} after the ramp begins, and would end at {view.reads(end_L)}"
-        f"{_at_end(view, start_s, total)}.",
+        f"at field, {percent(line)}, {when}{length(after_s)} after the ramp begins, and would end at "
+        f"{view.reads(end_L)}{_at_end(view, start_s, total)}.",
         value=view.trusted(end_L),
         least=line,
         unit="%",
@@ -264,8 +263,3 @@ def _emptied(view: WeekView, bath: Bath, target: Target, mode: str, field: float
 
 def _at_end(view: WeekView, start_s: float, total: float) -> str:
     return "" if start_s else f", {view.wall(start_s + total)}"
-
-
-def present_rules() -> tuple[Rule, ...]:
-    """The rules this module judges weeks by."""
-    return START, AT_FIELD, COVERED, RESERVE

@@ -63,17 +63,20 @@ class Plain:
     def __init__(self) -> None:
         for module in ("anneal", "branch"):  # these two import all others
             importlib.import_module(f"planner.optimise.compiled.{module}")
-        names: dict[str, Any] = {}
-        for compiled in _KERNELS.values():
-            names.update({key: value for key, value in compiled.py_func.__globals__.items() if key not in names})
+        spaces = {id(c.py_func.__globals__): dict(c.py_func.__globals__) for c in _KERNELS.values()}
+        self._kernels: dict[str, Any] = {}
         for name, compiled in _KERNELS.items():
-            names[name] = types.FunctionType(compiled.py_func.__code__, names, name)
-        self._names = names
+            function = compiled.py_func
+            space = spaces[id(function.__globals__)]
+            self._kernels[name] = types.FunctionType(function.__code__, space, name)
+        for space in spaces.values():
+            space.update({name: self._kernels[name] for name in space if space[name] is _KERNELS.get(name)})
 
     def __getattr__(self, name: str) -> Any:
-        if name in _KERNELS:
-            return self._names[name]
-        raise AttributeError(name)
+        try:
+            return self.__dict__["_kernels"][name]
+        except KeyError:
+            raise AttributeError(name) from None
 
 
 def cache_is_warm(name: str) -> bool:
