@@ -8,7 +8,7 @@ from datetime import UTC, datetime, time, timedelta
 from zoneinfo import ZoneInfo, ZoneInfoNotFoundError
 
 WEEKDAYS = ("Mon", "Tue", "Wed", "Thu", "Fri", "Sat", "Sun")
-_WEEKDAY_TIME = re.compile(r"\s*(Mon|Tue|Wed|Thu|Fri|Sat|Sun)\w*\s+(\d{1,2}):(\d{2})(?::(\d{2}))?\s*", re.IGNORECASE)
+_WEEKDAY_TIME = re.compile(r"\s*(Mon|Tue|Wed|Thu|Fri|Sat|Sun)[a-z]*\s+([0-9]{1,2}):([0-9]{2})(?::([0-9]{2}))?\s*", re.IGNORECASE)
 
 
 def zone(name: str) -> ZoneInfo:
@@ -90,7 +90,7 @@ class Clock:
         """
         if isinstance(written, datetime):
             return localise(written, self.where)
-        match = _WEEKDAY_TIME.fullmatch(written)
+        match = _WEEKDAY_TIME.fullmatch(written) if len(written) <= 60 else None
         if match is None:
             if (spelled := iso_datetime(written)) is not None:
                 return localise(spelled, self.where)

@@ -46,11 +46,44 @@ _EXAMPLES = {
     "1/m**2": "1.1e11 cm^-2",
     "1/m**2/V": "0.7e11 cm^-2/V",
     "h/L": "0.25 h/L",
+    "m": "240 mm",
+    "m**2": "0.3 mm^2",
     "m**3": "90 m^3",
+    "kg": "40 kg",
+    "rad": "30 deg",
     "percent": "85 %",
 }
 
-_PLAIN = {"1/m**2": "m^-2", "1/m**2/V": "m^-2/V", "m**3": "m^3", "percent": "%"}
+_REACH = {
+    "T": (1e-9, 1e3),
+    "T/s": (1e-9, 10.0),
+    "T/A": (1e-5, 100.0),
+    "A": (1e-12, 1e5),
+    "A/s": (1e-6, 1e5),
+    "V": (1e-9, 1e5),
+    "V/s": (1e-9, 1e5),
+    "H": (1e-6, 1e5),
+    "ohm": (1e-9, 1e6),
+    "K": (1e-6, 1e4),
+    "s": (1e-9, 1e8),
+    "L": (1e-4, 1e7),
+    "L/s": (1e-8, 1e3),
+    "L/s/A": (1e-12, 1.0),
+    "L/T": (1e-6, 1e4),
+    "1/m**2": (1e8, 1e22),
+    "1/m**2/V": (1e6, 1e24),
+    "h/L": (1e-6, 1e4),
+    "m": (1e-6, 1e4),
+    "m**2": (1e-15, 1e4),
+    "m**3": (1e-3, 1e7),
+    "kg": (1e-9, 1e7),
+    "rad": (1e-6, 10.0),
+    "percent": (1e-4, 1e4),
+}
+"""Smallest (but zero) and largest size of a quantity that a laboratory can mean, in its fixed unit: generous powers of
+ten, so that only slips and mischief lie outside, and no arithmetic on what is inside overflows."""
+
+_PLAIN = {"1/m**2": "m^-2", "1/m**2/V": "m^-2/V", "m**2": "m^2", "m**3": "m^3", "percent": "%"}
 """Units that people write otherwise than pint's expressions."""
 
 _HINTS = {
@@ -152,6 +185,14 @@ def parse_amount(text: object, unit: str) -> Amount:
     return Amount(value, text.strip())
 
 
+def within_reach(amount: Amount, unit: str) -> Amount:
+    """The amount itself; raises ValueError for a size that no laboratory can mean."""
+    least, most = _REACH.get(unit, (0.0, float("inf")))
+    if amount != 0 and not least <= abs(amount) <= most:
+        raise ValueError(f"expected 0, or a size from {least:g} to {most:g} {_PLAIN.get(unit, unit)}")
+    return amount
+
+
 def short(unit: str) -> str:
     """The unit as it is written in examples ("T/min" where the inside uses T/s)."""
     return example(unit).split(" ", 1)[1]
@@ -185,7 +226,7 @@ class In:
             raise ValueError(f"must be at least {self.least:g} {self.unit}")
         if self.most is not None and not amount <= self.most:
             raise ValueError(f"must be at most {self.most:g} {self.unit}")
-        return amount
+        return within_reach(amount, self.unit)
 
     def write(self, value: float | str) -> str:
         """The text that reads as ``value``: as its author wrote it, or, for a default, in ``unit``."""
@@ -234,4 +275,7 @@ Percent = Annotated[float, In("percent", least=0, most=100)]
 Density = Annotated[float, In("1/m**2", above=0)]
 DensityPerVolt = Annotated[float, In("1/m**2/V")]
 HoursPerLitre = Annotated[float, In("h/L", least=0)]
+Metres = Annotated[float, In("m", above=0)]
+SquareMetres = Annotated[float, In("m**2", above=0)]
 CubicMetres = Annotated[float, In("m**3", above=0)]
+Kilograms = Annotated[float, In("kg", least=0)]

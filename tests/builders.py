@@ -10,6 +10,7 @@ from __future__ import annotations
 import json
 from collections.abc import Mapping
 from datetime import datetime
+from pathlib import Path
 from typing import Any
 
 from planner.files import Request, Rig, Week, parse_rig, parse_week
@@ -187,3 +188,11 @@ REST: Gates = (("S1/back", 0.0), ("S1/top", 0.0))
 def state_at(field_T: float, kelvin: float = 0.02, gates_V: Gates = REST, *, persistent: bool = False) -> State:
     """The rig settled at a field, a temperature and gate voltages."""
     return State(coil_at(field_T, persistent=persistent), Stage(kelvin), gates_V)
+
+
+def written(folder: Path, week_toml: str, rig_toml: str | None = None) -> Path:
+    """The week's path in a folder, with its rig beside it."""
+    (folder / "week.toml").write_text(week_toml, encoding="utf-8")
+    if rig_toml is not None:
+        (folder / "round.rig.toml").write_text(rig_toml, encoding="utf-8")
+    return folder / "week.toml"

@@ -10,10 +10,11 @@ from typing import Annotated, Any
 
 from pydantic import PlainSerializer, PlainValidator, WithJsonSchema
 
-from planner.units import Amount, parse_amount
+from planner.units import Amount, parse_amount, within_reach
 
 _FRACTION = re.compile(r"\s*([+\-−]?\d{1,4})\s*/\s*(\d{1,4})\s*")
 _RANGE = re.compile(r"(.+?)\s+to\s+(.+)")
+_LONGEST = 120
 _FILLING = 'expected a filling such as "1/3", 2 or 2.5'
 
 
@@ -23,7 +24,8 @@ def read_filling(written: object) -> Amount:
         return written
     if isinstance(written, bool) or not isinstance(written, (int, float, str)):
         raise ValueError(_FILLING)
-    text = str(written).strip()
+    if len(text := str(written).strip()) > _LONGEST:
+        raise ValueError(_FILLING)
     if match := _FRACTION.fullmatch(text):
         top, bottom = int(match[1].replace("−", "-")), int(match[2])
         if bottom == 0:
@@ -36,6 +38,8 @@ def read_filling(written: object) -> Amount:
             raise ValueError(_FILLING) from None
     if not math.isfinite(value) or value == 0:
         raise ValueError(f"{_FILLING}: not zero, not infinite")
+    if not 1e-4 <= abs(value) <= 1e5:
+        raise ValueError(f"{_FILLING}: of a size from 0.0001 to 100000")
     return Amount(value, text)
 
 
@@ -66,7 +70,8 @@ class Range:
 def _read_range(written: Any, one: Any, expected: str) -> Range:
     if isinstance(written, Range):
         return written
-    match = _RANGE.fullmatch(written.strip()) if isinstance(written, str) else None
+    short = isinstance(written, str) and len(written) <= _LONGEST
+    match = _RANGE.fullmatch(written.strip()) if short else None
     if match is None:
         raise ValueError(expected)
     first, last = one(match[1]), one(match[2])
@@ -75,14 +80,18 @@ def _read_range(written: Any, one: Any, expected: str) -> Range:
     return Range(float(first), float(last), written.strip())
 
 
+def _amount(written: object, unit: str) -> Amount:
+    return within_reach(parse_amount(written, unit), unit)
+
+
 def read_field_range(written: object) -> Range:
     """ "0 T to 12 T", in tesla. Raises ValueError otherwise."""
-    return _read_range(written, lambda part: parse_amount(part, "T"), 'expected a range such as "0 T to 12 T"')
+    return _read_range(written, lambda part: _amount(part, "T"), 'expected a range such as "0 T to 12 T"')
 
 
 def read_volt_range(written: object) -> Range:
     """ "-0.5 V to 0.5 V", in volt. Raises ValueError otherwise."""
-    return _read_range(written, lambda part: parse_amount(part, "V"), 'expected a range such as "-0.5 V to 0.5 V"')
+    return _read_range(written, lambda part: _amount(part, "V"), 'expected a range such as "-0.5 V to 0.5 V"')
 
 
 def read_filling_range(written: object) -> Range:
@@ -111,7 +120,7 @@ def read_temperature(written: object) -> TemperatureAsk:
         return TemperatureAsk(None, at_most=False, text="base")
     at_most = isinstance(written, str) and written.lstrip().startswith(("≤", "<="))
     bare = re.sub(r"^\s*(≤|<=)", "", written) if isinstance(written, str) else written
-    kelvin = parse_amount(bare, "K")
+    kelvin = _amount(bare, "K")
     if kelvin <= 0:
         raise ValueError("a temperature is above 0 K")
     return TemperatureAsk(float(kelvin), at_most, str(written).strip())

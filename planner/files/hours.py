@@ -11,7 +11,8 @@ from pydantic import BeforeValidator, Field, PlainSerializer, WithJsonSchema
 from planner.clock import WEEKDAYS, iso_datetime
 from planner.files.model import Table
 
-_TIME = re.compile(r"\s*(\d{1,2}):(\d{2})\s*")
+_TIME = re.compile(r"\s*([0-9]{1,2}):([0-9]{2})\s*")
+_LONGEST = 120
 
 
 def read_days(written: object) -> frozenset[int]:
@@ -19,7 +20,7 @@ def read_days(written: object) -> frozenset[int]:
     if isinstance(written, frozenset):
         return written
     expected = 'expected weekdays such as "Mon-Fri", "Mon, Wed" or "daily"'
-    if not isinstance(written, str) or not written.strip():
+    if not isinstance(written, str) or not written.strip() or len(written) > _LONGEST:
         raise ValueError(expected)
     if written.strip().lower() in ("daily", "every day"):
         return frozenset(range(7))

@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 import re
 from collections.abc import Iterator
+from itertools import islice
 from typing import Any
 
 from planner.errors import Problem
@@ -30,15 +31,16 @@ def too_deep(text: str) -> bool:
 
 def size_problems(data: dict[str, Any], file: str) -> list[Problem]:
     """What in a file is too large to be meant: whole numbers, texts, lists, depth; and numbers that are none."""
-    return [Problem(file, where, "", expected) for where, expected in _oversize(data, "", 0)][:MOST_PROBLEMS]
+    return [Problem(file, *found) for found in islice(_oversize(data, "", 0), MOST_PROBLEMS)]
 
 
-def _oversize(value: Any, where: str, depth: int) -> Iterator[tuple[str, str]]:
+def _oversize(value: Any, where: str, depth: int) -> Iterator[tuple[str, str, str]]:
+    """Place, value and what was expected of everything too large in a value."""
     if isinstance(value, (dict, list)):
         if depth > DEEPEST:
-            yield where[:200], f"tables and lists nested more than {DEEPEST} deep"
+            yield where[:200], "", f"expected tables and lists at most {DEEPEST} deep"
         elif len(value) > MOST_ROWS:
-            yield where[:200], f"has {len(value)} entries: expected at most {MOST_ROWS}"
+            yield where[:200], f"{len(value)} rows", f"expected at most {MOST_ROWS}"
         elif isinstance(value, dict):
             for key, inner in value.items():
                 yield from _oversize(inner, f"{where}.{key[:60]}" if where else key[:60], depth + 1)
@@ -46,8 +48,8 @@ def _oversize(value: Any, where: str, depth: int) -> Iterator[tuple[str, str]]:
             for at, inner in enumerate(value):
                 yield from _oversize(inner, f"{where}[{at}]", depth + 1)
     elif isinstance(value, str) and len(value) > LONGEST_TEXT:
-        yield where, f"has {len(value)} characters: expected at most {LONGEST_TEXT}"
+        yield where, f"{len(value)} characters", f"expected at most {LONGEST_TEXT}"
     elif isinstance(value, int) and not -_WHOLE_NUMBERS <= value < _WHOLE_NUMBERS:
-        yield where, "expected a whole number of at most 64 bits"
+        yield where, "", "expected a whole number of at most 64 bits"
     elif isinstance(value, float) and not math.isfinite(value):
-        yield where, f"is {value}: expected a number that is finite"
+        yield where, str(value), "expected a finite number"

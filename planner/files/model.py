@@ -11,7 +11,7 @@ import re
 from pydantic import BaseModel, ConfigDict
 
 _UNIT_SUFFIX = re.compile(
-    r"_(?:T_per_s|T_per_A|A_per_s|V_per_s|L_per_s_A|L_per_s|L_per_T|per_m2_V|per_m2|h_per_L|m3|percent|ohm|T|A|V|H|K|s|L)$"
+    r"_(?:T_per_s|T_per_A|A_per_s|V_per_s|L_per_s_A|L_per_s|L_per_T|per_m2_V|per_m2|h_per_L|m3|m2|kg|percent|ohm|T|A|V|H|K|s|m|L)$"
 )
 
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 from datetime import datetime
 from difflib import get_close_matches
-from itertools import islice, takewhile
+from itertools import islice
 from typing import Any
 
 from planner.clock import Clock, localise, zone
@@ -66,7 +66,7 @@ def _twice(data: dict[str, Any], file: str) -> Iterator[Problem]:
 
 
 def _unknown(data: dict[str, Any], file: str) -> Iterator[Problem]:
-    users, samples, targets = (_names(data, key) for key in ("users", "samples", "targets"))
+    users, samples, targets = (dict.fromkeys(_names(data, key)) for key in ("users", "samples", "targets"))
     for key, field, known, what in [
         ("samples", "user", users, "a user of this file"),
         ("targets", "user", users, "a user of this file"),
@@ -75,12 +75,12 @@ def _unknown(data: dict[str, Any], file: str) -> Iterator[Problem]:
         for at, row in _tables(data, key):
             name = row.get(field)
             if isinstance(name, str) and name not in known:
-                yield Problem(file, f"{key}[{at}].{field}", f'"{name}"', f"expected {what}", nearest(name, known))
+                yield Problem(file, f"{key}[{at}].{field}", f'"{name}"', f"expected {what}", nearest(name, list(known)))
     for at, row in _tables(data, "targets"):
         for field in ("after", "before"):
             for name in _texts(row.get(field)):
                 if name not in targets:
-                    hint = nearest(name, targets)
+                    hint = nearest(name, list(targets))
                     yield Problem(file, f"targets[{at}].{field}", f'"{name}"', "expected a target of this file", hint)
 
 
@@ -179,7 +179,10 @@ def _times(data: dict[str, Any], file: str) -> Iterator[Problem]:
             slots.append((*read, place))
     slots.sort()
     for at, (_, finish, place) in enumerate(slots):
-        for _, _, other in takewhile(lambda slot, finish=finish: slot[0] < finish, slots[at + 1 :]):
+        for later in range(at + 1, len(slots)):
+            begin, _, other = slots[later]
+            if begin >= finish:
+                break
             yield Problem(file, other, "", f"overlaps {place}; the magnet can be promised once only")
     helium = data.get("helium")
     for at, row in _tables(helium, "deliveries"):

@@ -7,6 +7,7 @@ from typing import Annotated, Literal
 
 from pydantic import Field, model_validator
 
+from planner.files.hardware import Conductor, Cooldown, Winding
 from planner.files.hours import Hours
 from planner.files.model import Table
 from planner.units import (
@@ -73,6 +74,14 @@ class Magnet(Table):
     settle_s: Seconds = Field(default=0.0, description="after a ramp, before data")
     supply: Supply
     switch: Switch | None = None
+    lambda_field_T: PositiveTesla | None = Field(
+        default=None,
+        description="rated field with the coil below the lambda point; no week is planned beyond rated_field",
+    )
+    lambda_table: tuple[RampSegment, ...] = Field(default=(), description="ramp_table's rows beyond rated_field")
+    lambda_temperature_K: Kelvin | None = Field(default=None, description="of the coil below the lambda point")
+    conductor: tuple[Conductor, ...] = Field(default=(), description="sections of the winding")
+    winding: Winding | None = None
 
     @model_validator(mode="after")
     def _table_covers_the_field(self) -> Magnet:
@@ -92,6 +101,25 @@ class Magnet(Table):
             raise ValueError(
                 f"supply.max_current: the rated field needs {needed_A:.4g} A, the supply gives {given_A:.4g} A"
             )
+        return self
+
+    @model_validator(mode="after")
+    def _lambda_field_lies_above(self) -> Magnet:
+        highest_T = self.lambda_field_T
+        if highest_T is None:
+            if self.lambda_table or self.lambda_temperature_K is not None:
+                raise ValueError("lambda_field: is missing beside lambda_table or lambda_temperature")
+            return self
+        if highest_T <= self.rated_field_T:
+            raise ValueError("lambda_field: expected more than rated_field")
+        needed_A, given_A = highest_T / self.field_per_current_T_per_A, self.supply.max_current_A
+        if needed_A > given_A * (1 + 1e-9):
+            raise ValueError(f"lambda_field: needs {needed_A:.4g} A, the supply gives {given_A:.4g} A")
+        edges = [self.rated_field_T, *(segment.to_T for segment in self.lambda_table)]
+        if any(high <= low for low, high in pairwise(edges)):
+            raise ValueError("lambda_table: the `to` fields must begin above rated_field and rise from row to row")
+        if self.lambda_table and edges[-1] < highest_T:
+            raise ValueError(f"lambda_table: ends at {edges[-1]:g} T, below lambda_field")
         return self
 
 
@@ -259,6 +287,7 @@ class Rig(Table):
     stage: StagePart
     room: Room = Room()
     policies: Policies = Policies()
+    cooldown: Cooldown | None = None
 
     @model_validator(mode="after")
     def _wet_or_dry(self) -> Rig:

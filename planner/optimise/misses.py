@@ -8,7 +8,7 @@ from __future__ import annotations
 import itertools
 import time
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from enum import StrEnum
 from typing import Any
 
@@ -123,8 +123,17 @@ class _Trial:
                     break
         if best is None:
             return Miss(self.take, Reason.NOT_TRIED, gap_s=self._longest_gap())
-        values = {**best[1].__dict__, "gap_s": self._longest_gap(), "alone": self._alone(nodes)}
-        return Miss(**values)
+        miss = replace(best[1], gap_s=self._longest_gap(), alone=self._alone(nodes))
+        return replace(miss, late_s=self._late(miss)) if miss.reason is Reason.ROOM else miss
+
+    def _late(self, miss: Miss) -> int:
+        """Seconds by which the whole order with the take in it would pass the horizon."""
+        put = [miss.node] if miss.service < 0 else [miss.service, miss.node]
+        length = self._read_with(put, miss.position)
+        longer = self.tables._replace(horizon=2 * self.problem.horizon + miss.needed_s)
+        status, _, _, end = self.kernels.evaluate(longer, self.scratch, self.states, self.items, length, 0)
+        # beyond the horizon there may be no people, and nothing to keep the level up: then what was seen must do
+        return int(end) - self.problem.horizon if status == OK else miss.late_s
 
     def _done(self) -> set[int]:
         return {take for node in self.order for take in self.problem.covers[node]}

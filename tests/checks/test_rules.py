@@ -6,11 +6,11 @@ import pytest
 
 from planner.checks import RULES, check_plan, check_week
 from planner.plan import Finding, Kind
-from tests.checks import plants_asked, plants_helium, plants_magnet, plants_work
+from tests.checks import plants_asked, plants_helium, plants_magnet, plants_plan, plants_work
 from tests.checks.build import serious
 from tests.checks.plants import PLANTS, SOUND, Judged, Plant
 
-FAMILIES = (plants_magnet, plants_helium, plants_work, plants_asked)
+FAMILIES = (plants_magnet, plants_helium, plants_work, plants_plan, plants_asked)
 
 
 def judged(made: Judged) -> tuple[Finding, ...]:

@@ -44,7 +44,7 @@ def draw_shape(rng: np.random.Generator, takes: int) -> Shape:
         musts=int(rng.integers(0, 3)) if flags[6] < 0.5 else 0,
         precedences=int(rng.integers(0, 3)),
         merged=bool(flags[7] < 0.3),
-        room=float(rng.choice([0.5, 0.8, 1.2, 2.0])),
+        room=float(rng.choice([0.2, 0.5, 1.2, 2.0])),
     )
 
 

@@ -89,7 +89,7 @@ def test_a_stop_from_another_thread_ends_the_solve_with_the_best_so_far() -> Non
 
 
 def test_the_same_seed_gives_the_same_result_if_that_is_asked_for() -> None:
-    problem = week(2, takes=16)
+    problem = week(2, takes=20)
     first, second = (solve(problem, seconds=1.0, seed=7, reproducible=True) for _ in range(2))
     assert (first.order, first.objective) == (second.order, second.objective)
     assert (first.prize_bound, first.cost_bound) == (second.prize_bound, second.cost_bound)
@@ -120,7 +120,7 @@ def _append(array, value):  # type: ignore[no-untyped-def]
 
 
 def test_nothing_to_do_is_a_result_too() -> None:
-    problem = random_problem(2, Shape(takes=0, refills=0, calendars=False))
+    problem = random_problem(4, Shape(takes=0, refills=0, calendars=False))
     result = solve(problem, seconds=1.0)
     assert result.objective is not None
     assert result.order == ()

@@ -137,7 +137,7 @@ def _still_order(view: PlanView, item: Placed, *, leads_move: bool) -> tuple[str
     before, after = item.before, item.after
     ends = before.mode is CoilMode.DRIVEN and after.mode is CoilMode.ZERO and item.last_T == 0
     begins = view.magnet.switch is None and before.mode is CoilMode.ZERO and after.mode is CoilMode.DRIVEN
-    if before.mode is not after.mode and not ends and not (begins and item.leg.action in MOVES_FIELD):
+    if before.mode is not after.mode and not ends and not (begins and item.leg.action in (*MOVES_FIELD, "reverse")):
         return f'the coil goes from {before.mode} to {after.mode} in a leg "{item.leg.action}"', "work the switch"
     if before.mode is CoilMode.PERSISTENT and leads_move:
         return f'the leads move in a leg "{item.leg.action}"', 'a leg "leads" of its own'

@@ -78,8 +78,11 @@ def fail(W: Any, block: int, reservoir: int, moment: int, short: float) -> None:
 
 
 @kernel
-def chain_starts(T: Any, W: Any, node: int, moment: int) -> int:
-    """Set the starts of a node that pours nothing; returns its end, or minus the failure."""
+def chain_starts(T: Any, W: Any, node: int, moment: int, arcs: int) -> int:
+    """Set the starts of a node that pours nothing; returns its end, or minus the failure.
+
+    ``arcs`` is how many blocks of the arc come before (for the failure).
+    """
     first = T.node[node, FIRST]
     count = T.node[node, COUNT]
     at = moment
@@ -94,7 +97,7 @@ def chain_starts(T: Any, W: Any, node: int, moment: int) -> int:
             seconds = T.block[first + row, SECONDS]
             found = fit(T, T.block[first + row, CALENDAR], at, seconds)
             if found < 0 or found + seconds > T.horizon:
-                fail(W, row, -1, at, 0.0)
+                fail(W, arcs + row, -1, at, float(max(0, found + seconds - T.horizon)) if found >= 0 else 0.0)
                 return -NO_INTERVAL if found < 0 else -HORIZON
             if found > at and row > link:
                 start += found - at

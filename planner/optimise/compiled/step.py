@@ -203,7 +203,7 @@ def step(T: Any, W: Any, node: int, place: int, moment: int, levels: Any, given:
         if T.node[node, REFILL] >= 0:
             end = refill_start(T, W, node, place, moment, at, levels, given)
         else:
-            end = chain_starts(T, W, node, at)
+            end = chain_starts(T, W, node, at, count)
         if end < 0:
             return -end, 0, 0.0
         keep = W.time[NODE_START, 0]
