@@ -78,6 +78,17 @@ class Inner:
     help: str
 
 
+_NOT_IN_FORMS = ("format", "kind", "targets")
+
+# The keys of a target that matter most, in the order in which one thinks of them.
+_FIRST = (
+    *("name", "kind", "what", "sample", "filling", "field", "fillings", "fields", "rungs", "width"),
+    *("temperatures", "temperature", "duration", "gate", "sweep", "points", "dwell"),
+    *("second_gate", "second_sweep", "second_points", "rate", "feature", "direction", "coil"),
+    *("priority", "must", "attended", "people", "training", "gates", "after", "before"),
+)
+
+
 @cache
 def fields_of(model: type[Table]) -> tuple[Field, ...]:
     """The fields that a form shows for a table, in the order of the model."""
@@ -89,8 +100,10 @@ def fields_of(model: type[Table]) -> tuple[Field, ...]:
             found += [_below(key, field) for field in fields_of(LockIn)]
         elif inner is not None and not (many and inner in (Hours, Span)):
             continue
-        elif key not in ("format",) and not (key == "kind" and model in (Week, Rig)):
+        elif not (model in (Week, Rig) and key in _NOT_IN_FORMS):
             found.append(_field(model, attribute, key, info, inner))
+    if issubclass(model, Target):
+        found.sort(key=lambda field: _FIRST.index(field.key) if field.key in _FIRST else len(_FIRST))
     return tuple(found)
 
 
@@ -168,7 +181,9 @@ def _field(model: type[Table], attribute: str, key: str, info: FieldInfo, inner:
         label=key.replace("_", " "),
         kind=kind,
         unit=_unit(shape),
-        examples=_examples(shape, kind),
+        examples=_EXAMPLES_OF_KEYS.get(
+            ("Target" if issubclass(model, Target) else model.__name__, key), _examples(shape, kind)
+        ),
         help=sentence(model, attribute, info),
         required=info.is_required(),
         default=_default(model, key, info),
@@ -238,6 +253,18 @@ def _unit(shape: dict[str, Any]) -> str:
     return str(shape.get("unit") or (inside.get("unit") if isinstance(inside, dict) else "") or "")
 
 
+_EXAMPLES_OF_KEYS = {
+    ("Sample", "density_error"): ("3 %",),
+    ("LockIn", "time_constant"): ("300 ms",),
+    ("LockIn", "settled"): ("99 %",),
+    ("Target", "duration"): ("20 min", "6 h"),
+    ("Target", "width"): ("0.3 T",),
+    ("Target", "feature"): ("25 mT",),
+    ("Bath", "gauge_error"): ("2 %",),
+    ("Week", "zone"): ("Europe/Vienna",),
+    ("User", "letter"): ("A",),
+}
+
 _OWN_EXAMPLES = {
     FieldKind.YES_NO: ("yes", "no"),
     FieldKind.WHOLE: ("3",),
@@ -266,6 +293,8 @@ def _default(model: type[Table], key: str, info: FieldInfo) -> str:
         return "yes" if shown else "no"
     if shown in ([], {}, None, ""):
         return ""
+    if isinstance(shown, dict):
+        return str(shown.get("text", ""))
     return ", ".join(sorted(shown)) if isinstance(shown, list) else str(shown)
 
 

@@ -13,6 +13,7 @@ from planner.errors import Problem
 LARGEST_FILE = 1_000_000
 """Bytes of a week or rig file."""
 MOST_TARGETS = 2000
+MOST_TAKES = 2000
 MOST_ROWS = 5000
 """Entries of any list or table."""
 MOST_PROBLEMS = 100

@@ -20,6 +20,10 @@ def key_of(attribute: str) -> str:
     return _UNIT_SUFFIX.sub("", attribute).removesuffix("_")
 
 
+LINE = r"^[^\x00-\x1f\x7f-\x9f\u2028\u2029\u202a-\u202e\u2066-\u2069]*$"
+"""Text of one line that cannot steer a terminal or turn the direction of writing."""
+
+
 class Table(BaseModel):
     """A TOML table: unknown keys are errors, values do not change after reading."""
 

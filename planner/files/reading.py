@@ -11,7 +11,7 @@ from typing import Any, Literal, TypeVar
 from pydantic import BaseModel, ValidationError
 
 from planner.errors import InputError, Problem
-from planner.files.limits import DEEPEST, LARGEST_FILE, MOST_TARGETS, size_problems, too_deep
+from planner.files.limits import DEEPEST, LARGEST_FILE, MOST_TAKES, MOST_TARGETS, size_problems, too_deep
 from planner.files.problems import problems_of, shown
 from planner.files.references import nearest, reference_problems
 from planner.files.rig import Rig
@@ -99,6 +99,9 @@ def parse_week(text: str, file: str = "week") -> Week:
     problems += reference_problems(data, file)
     if problems or week is None:
         raise InputError(problems)
+    takes = sum(target.takes for target in week.targets)
+    if takes > MOST_TAKES:
+        raise InputError([Problem(file, "targets", f"{takes} takes", f"a week holds {MOST_TAKES} at most")])
     return week
 
 

@@ -9,7 +9,7 @@ from pydantic import Field, model_validator
 
 from planner.files.hardware import Conductor, Cooldown, Winding
 from planner.files.hours import Hours
-from planner.files.model import Table
+from planner.files.model import LINE, Table
 from planner.units import (
     AmpereRate,
     CubicMetres,
@@ -33,6 +33,7 @@ from planner.units import (
 )
 
 RIG_FORMAT: Literal[1] = 1
+Line = Annotated[str, Field(max_length=200, pattern=LINE)]
 
 
 class RampSegment(Table):
@@ -70,7 +71,7 @@ class Magnet(Table):
     rated_field_T: PositiveTesla
     field_per_current_T_per_A: TeslaPerAmpere
     inductance_H: Henry
-    ramp_table: Annotated[tuple[RampSegment, ...], Field(min_length=1)]
+    ramp_table: Annotated[tuple[RampSegment, ...], Field(min_length=1, max_length=100)]
     settle_s: Seconds = Field(default=0.0, description="after a ramp, before data")
     supply: Supply
     switch: Switch | None = None
@@ -158,15 +159,15 @@ class Transfer(Table):
     fill_to_percent: Percent = 100.0
     least_pour_L: Litres = Field(default=5.0, description="less is not worth cooling the line")
     people: Annotated[int, Field(ge=1, le=9)] = 2
-    training: str = "transfer"
+    training: Line = "transfer"
     coil: Literal["zero", "persistent or zero"] = "zero"
-    hours: tuple[Hours, ...] = ()
+    hours: Annotated[tuple[Hours, ...], Field(max_length=50)] = ()
 
 
 class Bath(Table):
     """A liquid-helium bath around the coil."""
 
-    calibration: Annotated[tuple[LevelPoint, ...], Field(min_length=2)]
+    calibration: Annotated[tuple[LevelPoint, ...], Field(min_length=2, max_length=1000)]
     gauge_error_percent: Percent
     lines: Lines
     losses: Losses
@@ -191,7 +192,7 @@ class Bath(Table):
 class Cooler(Table):
     """A cryogen-free cooler: no bath, no helium book."""
 
-    name: str = "cooler"
+    name: Line = "cooler"
 
 
 class WarmingPoint(Table):
@@ -229,10 +230,10 @@ class StagePart(Table):
     kind: Literal["dilution", "continuous"]
     base_K: Kelvin
     highest_K: Kelvin = Field(description="with the mixture circulating")
-    warming: tuple[WarmingPoint, ...] = ()
-    cooling: tuple[CoolingPoint, ...] = ()
+    warming: Annotated[tuple[WarmingPoint, ...], Field(max_length=100)] = ()
+    cooling: Annotated[tuple[CoolingPoint, ...], Field(max_length=100)] = ()
     model: ThermalModel | None = None
-    after_ramp: tuple[SettleAfterRamp, ...] = ()
+    after_ramp: Annotated[tuple[SettleAfterRamp, ...], Field(max_length=100)] = ()
 
     @model_validator(mode="after")
     def _one_way_to_know(self) -> StagePart:
@@ -256,15 +257,15 @@ class StagePart(Table):
 class Contact(Table):
     """Whom to call: a role and how to reach it."""
 
-    role: str
-    reach: str
+    role: Line
+    reach: Line
 
 
 class Room(Table):
     """The room of the rig: its volume for the oxygen figure, and whom to call."""
 
     volume_m3: CubicMetres | None = None
-    contacts: tuple[Contact, ...] = ()
+    contacts: Annotated[tuple[Contact, ...], Field(max_length=50)] = ()
 
 
 class Policies(Table):
@@ -279,7 +280,7 @@ class Rig(Table):
 
     format: Literal[1]
     kind: Literal["rig"]
-    name: Annotated[str, Field(min_length=1, max_length=80)]
+    name: Annotated[str, Field(min_length=1, max_length=80, pattern=LINE)]
     notes: str = ""
     magnet: Magnet
     bath: Bath | None = None

@@ -47,6 +47,8 @@ def start_state(week: Week, rig: Rig) -> State:
         current = present.persistent_current_A
         trapped = "unknown" if isinstance(current, str) else along_z(float(current or 0.0))
         leads = along_z(float(present.lead_current_A or 0.0))
+        if not isinstance(trapped, str):  # the recorded current says more exactly what the field is
+            field_T = trapped[2] * rig.magnet.field_per_current_T_per_A
         coil = Coil(along_z(field_T), CoilMode.PERSISTENT, leads, "unknown" if isinstance(trapped, str) else trapped)
     gates = dict(resting_gates(week)) | {name: float(volt) for name, volt in present.gates.items()}
     stage = Stage(temperature_of(rig, present.temperature_K), charge_of(rig))

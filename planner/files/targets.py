@@ -16,11 +16,16 @@ from planner.files.asks import (
     VoltRange,
 )
 from planner.files.hours import Hours, Span
-from planner.files.model import Table
+from planner.files.model import LINE, Table
 from planner.units import In, Kelvin, PositiveSeconds, PositiveTesla, Seconds, Tesla, TeslaRate, Volt
 
-Name = Annotated[str, Field(min_length=1, max_length=60, pattern=r"^[^\x00-\x1f\x7f]+$")]
-Note = Annotated[str, Field(max_length=200, pattern=r"^[^\x00-\x1f\x7f]*$")]
+Name = Annotated[str, Field(min_length=1, max_length=60, pattern=LINE)]
+Note = Annotated[str, Field(max_length=200, pattern=LINE)]
+Names = Annotated[tuple[Name, ...], Field(max_length=500)]
+Gates = Annotated[dict[str, Volt], Field(max_length=50)]
+Windows = Annotated[tuple[Span, ...], Field(max_length=100)]
+WeeklyHours = Annotated[tuple[Hours, ...], Field(max_length=50)]
+MOST_POINTS = 10_000_000
 Direction = Literal["up", "down", "both", "either"]
 BASE = TemperatureAsk(None, at_most=False, text="base")
 
@@ -43,18 +48,23 @@ class Target(Table):
     priority: Annotated[int, Field(ge=1, le=5)] = Field(default=3, description="5 matters most")
     must: bool = False
     temperature: Temperature = BASE
-    gates: dict[str, Volt] = Field(default={}, description="voltages held; gates not named stay at rest")
-    after: tuple[Name, ...] = ()
-    before: tuple[Name, ...] = ()
+    gates: Gates = Field(default={}, description="voltages held; gates not named stay at rest")
+    after: Names = ()
+    before: Names = ()
     attended: bool = Field(default=False, description="somebody must be there all the while")
-    windows: tuple[Span, ...] = ()
-    hours: tuple[Hours, ...] = ()
+    windows: Windows = ()
+    hours: WeeklyHours = ()
     repeats: Annotated[int, Field(ge=1, le=100)] = 1
     decide_s: Seconds = Field(default=0.0, description="a pause, with staff, to look and decide what comes next")
     lockin: LockIn | None = Field(default=None, description="left out: the sample's")
     excitation: Note = ""
     contacts: Note = ""
     file: Note = ""
+
+    @property
+    def takes(self) -> int:
+        """How many takes it expands to."""
+        return self.repeats
 
 
 class AtOneField(Target):
@@ -134,6 +144,11 @@ class TemperatureSeries(AtOneField):
     temperatures_K: Annotated[tuple[Kelvin, ...], Field(min_length=1, max_length=100)]
     duration_s: PositiveSeconds = Field(description="of the measurement at each temperature, settling apart")
 
+    @property
+    def takes(self) -> int:
+        """One a temperature."""
+        return self.repeats * len(self.temperatures_K)
+
 
 class Map(Target):
     """A gate sweep at each of several fields (rungs); one take a rung."""
@@ -141,8 +156,8 @@ class Map(Target):
     kind: Literal["map"]
     field: FieldRange | None = None
     filling: FillingRange | None = None
-    fields_T: tuple[Tesla, ...] = ()
-    fillings: tuple[Filling, ...] = ()
+    fields_T: Annotated[tuple[Tesla, ...], Field(max_length=1000)] = ()
+    fillings: Annotated[tuple[Filling, ...], Field(max_length=1000)] = ()
     rungs: Annotated[int, Field(ge=2, le=1000)] | None = Field(
         default=None, description="with a range: how many fields"
     )

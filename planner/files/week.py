@@ -8,9 +8,9 @@ from zoneinfo import ZoneInfo
 from pydantic import AfterValidator, Field, model_validator
 
 from planner.clock import Clock, localise, zone
-from planner.files.hours import DateAndTime, Hours, Moment, Span
-from planner.files.model import Table
-from planner.files.targets import AnyTarget, LockIn, Name, Note
+from planner.files.hours import DateAndTime, Moment, Span
+from planner.files.model import LINE, Table
+from planner.files.targets import AnyTarget, LockIn, Name, Names, Note, WeeklyHours, Windows
 from planner.units import (
     Ampere,
     Density,
@@ -60,7 +60,7 @@ class Sample(Table):
     density_per_m2: Density
     density_error_percent: Annotated[float, In("percent", least=0, most=50)] = 0.0
     carriers: Literal["electrons", "holes"] = "electrons"
-    gates: tuple[Gate, ...] = ()
+    gates: Annotated[tuple[Gate, ...], Field(max_length=50)] = ()
     lockin: LockIn | None = None
     contacts: Note = ""
 
@@ -74,7 +74,7 @@ class User(Table):
 
     name: Name
     letter: Annotated[str, Field(pattern=r"^[A-Z]$")]
-    slots: tuple[Span, ...] = ()
+    slots: Windows = ()
     only_in_slots: bool = False
 
 
@@ -82,9 +82,9 @@ class Person(Table):
     """Somebody on the roster. Hours left out mean all staffed hours."""
 
     name: Name
-    trained: tuple[Name, ...] = ()
-    hours: tuple[Hours, ...] = ()
-    away: tuple[Span, ...] = ()
+    trained: Names = ()
+    hours: WeeklyHours = ()
+    away: Windows = ()
 
 
 class Quiet(Table):
@@ -108,7 +108,7 @@ class Helium(Table):
     """Liquid helium in storage vessels, and what will be delivered."""
 
     stock_L: Litres = 0.0
-    deliveries: tuple[Delivery, ...] = ()
+    deliveries: Annotated[tuple[Delivery, ...], Field(max_length=100)] = ()
 
 
 class Present(Table):
@@ -154,19 +154,19 @@ class Week(Table):
 
     format: Literal[1]
     kind: Literal["week"]
-    title: Annotated[str, Field(min_length=1, max_length=120)]
-    rig: Annotated[str, Field(min_length=1, max_length=200)]
+    title: Annotated[str, Field(min_length=1, max_length=120, pattern=LINE)]
+    rig: Annotated[str, Field(min_length=1, max_length=200, pattern=LINE)]
     zone: Annotated[str, AfterValidator(_zone_exists)]
     start: DateAndTime
     end: DateAndTime
     present: Present
     wanted_end: WantedEnd = WantedEnd()
-    staffed: tuple[Hours, ...] = ()
-    people: tuple[Person, ...] = ()
+    staffed: WeeklyHours = ()
+    people: Annotated[tuple[Person, ...], Field(max_length=60)] = ()
     users: Annotated[tuple[User, ...], Field(min_length=1, max_length=26)]
-    quiet: tuple[Quiet, ...] = ()
+    quiet: Annotated[tuple[Quiet, ...], Field(max_length=200)] = ()
     helium: Helium = Helium()
-    samples: tuple[Sample, ...] = ()
+    samples: Annotated[tuple[Sample, ...], Field(max_length=100)] = ()
     targets: tuple[AnyTarget, ...] = ()
     objective: Objective = Objective()
 

@@ -22,12 +22,14 @@ def move(setup: Setup, lines: Lines, before: State, after: State) -> tuple[Stret
         If the switch would have to be worked with the persistent current unknown.
     """
     switch = setup.rig.magnet.switch
-    keeps = _keeps_coil(before.coil, after.coil)
+    keeps = before.coil == after.coil
     stretches = []
     here = before
     if before.coil.mode is CoilMode.PERSISTENT and not keeps and switch is not None:
         legs = opening_legs(switch, before.coil)
-        opened = replace(before, coil=driven(setup.rig, before.coil.field_T[2]))
+        last = legs[-1].coil
+        assert last is not None
+        opened = replace(before, coil=last[1])
         stretches.append(_switching(lines, "open switch", before, opened, legs, switch.attended))
         here = opened
     closes = after.coil.mode is CoilMode.PERSISTENT and not keeps and switch is not None
@@ -39,10 +41,6 @@ def move(setup: Setup, lines: Lines, before: State, after: State) -> tuple[Stret
         legs = closing_legs(setup.rig, switch, after.coil.field_T[2])
         stretches.append(_switching(lines, "close switch", there, after, legs, switch.attended))
     return tuple(stretches)
-
-
-def _keeps_coil(before: Coil, after: Coil) -> bool:
-    return before.field_T == after.field_T and before.mode == after.mode
 
 
 def _switching(lines: Lines, label: str, before: State, after: State, legs: tuple[Leg, ...], attended: bool) -> Stretch:

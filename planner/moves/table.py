@@ -67,9 +67,9 @@ def move_table(setup: Setup, lines: Lines, states: Sequence[State]) -> MoveTable
     present, ramps = (np.zeros(shape, dtype=np.bool_) for _ in range(2))
     litres, least_L, wait, stay, highest_T = (np.zeros(shape) for _ in range(5))
     table = MoveTable(present, np.zeros(shape, dtype=np.int64), litres, least_L, wait, stay, ramps, highest_T)
-    same_coil = (places.field_T[:, None] == places.field_T) & (
-        np.where(places.persistent, 2, places.zero)[:, None] == np.where(places.persistent, 2, places.zero)
-    )
+    numbers = {coil: number for number, coil in enumerate(dict.fromkeys(state.coil for state in states))}
+    coils = np.array([numbers[state.coil] for state in states])
+    same_coil = coils[:, None] == coils[None, :]
     _switch_stretches(setup, lines, states, ~same_coil, table)
     _changes(setup, lines, states, places, same_coil, table)
     return table

@@ -8,6 +8,7 @@ own amount. A slope does not notice; the line of each direction has its own inte
 from __future__ import annotations
 
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
@@ -21,6 +22,9 @@ FEWEST_POINTS = 12
 _WINDOWS = np.geomspace(1.0, 0.04, 24)
 """Shares of the largest field that are tried as the end of the straight part, largest first."""
 
+_NO_BEND = 1e-6
+"""A cubic term below this share of the slope is rounding."""
+
 _TURN = 0.02
 """A reversal of the sweep counts when it goes back by this share of the range of field."""
 
@@ -29,9 +33,9 @@ _TURN = 0.02
 class HallFit:
     """A straight line through a Hall trace.
 
-    ``slope_sigma_ohm_per_T`` is one standard deviation. ``up_ohm`` and ``down_ohm`` are the intercepts at recorded field
-    zero of the two directions of sweep, None where a direction is missing. ``largest_T`` is the field up to which
-    the trace is straight within its scatter; ``straight`` is False where not even its lowest part is.
+    ``slope_sigma_ohm_per_T`` is one standard deviation. ``up_ohm`` and ``down_ohm`` are the intercepts at recorded
+    field zero of the two directions of sweep, None where a direction is missing. ``largest_T`` is the field up to
+    which the trace is straight within its scatter; ``straight`` is False where not even its lowest part is.
     """
 
     slope_ohm_per_T: float
@@ -82,7 +86,7 @@ def directions(field_T: FloatArray) -> NDArray[np.int8]:
     turns.append(field.size)
     signs = np.empty(field.size, dtype=np.int8)
     last = heading
-    for number, (begin, end) in enumerate(zip(turns[:-1], turns[1:], strict=True)):
+    for number, (begin, end) in enumerate(pairwise(turns)):
         signs[begin:end] = last * (-1) ** (len(turns) - 2 - number)
     return signs
 
@@ -157,11 +161,11 @@ def _line(
     found, errors, left = _least_squares(np.column_stack(columns), hall)
     freedom = max(1, field.size - len(columns))
     chi2 = float(left @ left) / freedom
-    widened = max(1.0, _alike(left))
+    widened = max(1.0, alike(left))
     sigma = errors[0] * np.sqrt(chi2 * widened)
     cubic, cubic_errors, cubic_left = _least_squares(np.column_stack([*columns, unit**3]), hall)
     cubic_sigma = cubic_errors[-1] * np.sqrt(float(cubic_left @ cubic_left) / max(1, freedom - 1) * widened)
-    bent = abs(cubic[-1]) > 2.0 * cubic_sigma
+    bent = abs(cubic[-1]) > max(2.0 * cubic_sigma, _NO_BEND * abs(found[0]))
     rough = noise > 0.0 and chi2 > noise**2 * (1.0 + 4.0 * np.sqrt(2.0 / freedom)) * max(1.0, widened)
     intercepts = dict(zip(ways, found[1:], strict=True))
     line = HallFit(
@@ -185,8 +189,12 @@ def _least_squares(columns: FloatArray, values: FloatArray) -> tuple[FloatArray,
     return found, np.sqrt(np.maximum(np.diag(inverse), 0.0)), values - columns @ found
 
 
-def _alike(left: FloatArray) -> float:
-    """How many neighbouring points count as one: (1 + ρ)/(1 − ρ) with the correlation ρ of neighbours."""
+def alike(left: FloatArray) -> float:
+    """Return how many neighbouring points count as one: (1 + ρ)/(1 − ρ) with the correlation ρ of neighbours.
+
+    1 where the correlation of the residuals ``left`` is no more than chance. Common practice for a first-order
+    autoregressive residual.
+    """
     total = float(left @ left)
     if total == 0.0:
         return 1.0

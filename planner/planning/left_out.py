@@ -43,9 +43,9 @@ def reason_text(compiled: Compiled, miss: Miss) -> str:
 def _nearest(compiled: Compiled, miss: Miss) -> str:
     if miss.reason is Reason.ROOM:
         needs = duration_text(miss.needed_s)
-        late = duration_text(miss.late_s)
         gap = duration_text(miss.gap_s)
-        return f"no room: needs {needs} incl. moves, longest idle time {gap}; the week would end {late} late"
+        late = f"; the week would end {duration_text(miss.late_s)} late" if miss.late_s else ""
+        return f"no room: needs {needs} incl. moves, longest idle time {gap}{late}"
     if miss.reason is Reason.WINDOW:
         needs = duration_text(miss.needed_s) if miss.needed_s else _own_duration(compiled, miss.take)
         return f"no window: needs {needs} within its own hours, staff and quiet times, and none of them has that left"

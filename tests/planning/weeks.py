@@ -91,7 +91,7 @@ def random_target(rng: random.Random, number: int) -> str:
     lines.append(f'kind = "{kind}"')
     field = rng.choice(['field = "0 T"', 'field = "3 T"', 'field = "-2 T"', 'field = "7.5 T"', "filling = 1"])
     if kind == "hold":
-        lines += [field, f'duration = "{rng.randint(10, 150)} min"', f'coil = "{rng.choice(["driven", "either"])}"']
+        lines += [field, f'duration = "{rng.randint(10, 280)} min"', f'coil = "{rng.choice(["driven", "either"])}"']
     elif kind == "field sweep":
         ends = rng.choice([("0", "4"), ("-1", "1"), ("3", "8"), ("7", "5")])
         lines += [f'field = "{ends[0]} T to {ends[1]} T"', 'rate = "0.1 T/min"']
