@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from datetime import time, timedelta
-from itertools import combinations
 
 from planner.clock import Clock
 
@@ -44,11 +43,10 @@ def same_all_through(calendars: list[Calendar], count: int) -> Calendar:
     touching ones stay apart, since nothing may run from one group's stretch into another's.
     """
     found: list[Interval] = []
-    for group in combinations(calendars, count):
-        shared = group[0]
-        for other in group[1:]:
-            shared = both(shared, other)
-        found += shared
+    for begin in {interval[0] for calendar in calendars for interval in calendar}:
+        ends = sorted((b for calendar in calendars for a, b in calendar if a <= begin < b), reverse=True)
+        if len(ends) >= count:  # whoever stays longest from here on makes the longest stretch that begins here
+            found.append((begin, ends[count - 1]))
     kept: list[Interval] = []
     for interval in sorted(set(found), key=lambda each: (each[0] - each[1], each)):
         kept += without((interval,), tuple(kept))

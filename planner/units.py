@@ -188,7 +188,7 @@ def parse_amount(text: object, unit: str) -> Amount:
 def within_reach(amount: Amount, unit: str) -> Amount:
     """The amount itself; raises ValueError for a size that no laboratory can mean."""
     least, most = _REACH.get(unit, (0.0, float("inf")))
-    if amount != 0 and not least <= abs(amount) <= most:
+    if amount and not least <= abs(amount) <= most:
         raise ValueError(f"expected 0, or a size from {least:g} to {most:g} {_PLAIN.get(unit, unit)}")
     return amount
 

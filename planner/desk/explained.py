@@ -144,6 +144,16 @@ _TABLES: dict[str, dict[str, str]] = {
         "lead_resistance_ohm": "of both leads",
         "polarity": "unipolar supplies stop at zero to be reversed",
     },
+    "Conductor": {"name": "of this part of the winding"},
+    "Winding": {"mean_radius_m": "of the winding, for the stray field", "length_m": "of the winding"},
+    "StrayDistance": {"field_T": "measured at these distances"},
+    "Cooldown": {
+        "copper_kg": "mass to be cooled",
+        "aluminium_kg": "mass to be cooled",
+        "stainless_kg": "mass to be cooled",
+        "chain": "the parts of a cooldown, one after the other",
+    },
+    "ChainPart": {"what": "the work in words", "time_s": "how long it takes"},
     "Switch": {"warm_s": "until it is open", "cool_s": "until it is closed"},
     "Bath": {
         "calibration": "gauge level against litres",

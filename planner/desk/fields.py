@@ -8,7 +8,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from enum import StrEnum
 from functools import cache
-from typing import Annotated, Any, get_args
+from typing import Annotated, Any, Literal, get_args
 
 from pydantic import TypeAdapter
 from pydantic.fields import FieldInfo
@@ -300,6 +300,8 @@ def _default(model: type[Table], key: str, info: FieldInfo) -> str:
 
 @cache
 def _adapter(model: type[Table], attribute: str) -> TypeAdapter[Any]:
+    if issubclass(model, Target) and attribute == "kind":
+        return TypeAdapter(Literal[tuple(TARGET_KINDS)])
     info = model.model_fields[attribute]
     metadata = tuple(info.metadata)
     annotation: Any = Annotated[(info.annotation, *metadata)] if metadata else info.annotation

@@ -22,6 +22,8 @@ def key_of(attribute: str) -> str:
 
 LINE = r"^[^\x00-\x1f\x7f-\x9f\u2028\u2029\u202a-\u202e\u2066-\u2069]*$"
 """Text of one line that cannot steer a terminal or turn the direction of writing."""
+LINES = r"^[^\x00-\x08\x0b-\x1f\x7f-\x9f\u202a-\u202e\u2066-\u2069]*$"
+"""The same, over several lines."""
 
 
 class Table(BaseModel):

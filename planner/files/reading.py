@@ -42,21 +42,21 @@ def read_week(path: Path | str) -> Request:
         With every problem found in either file.
     """
     path = Path(path)
-    text = _text_of(path)
+    text = text_of(path)
     data = _toml(text, path.name)
     problems: list[Problem] = []
-    rig_path, rig_text, rig = None, "", None
+    rig_text, rig = "", None
     try:
-        rig_path = _rig_path(data, path)
-        rig_text = _text_of(rig_path)
-        rig = parse_rig(rig_text, rig_path.name)
+        beside = rig_path(data, path)
+        rig_text = text_of(beside)
+        rig = parse_rig(rig_text, beside.name)
     except InputError as error:
         problems += error.problems
     try:
         week = parse_week(text, path.name)
     except InputError as error:
         raise InputError([*error.problems, *problems]) from None
-    if rig is None or rig_path is None:
+    if rig is None:
         raise InputError(problems)
     return _fitting(week, rig, (source("week", path.name, text), source("rig", week.rig, rig_text)))
 
@@ -64,7 +64,7 @@ def read_week(path: Path | str) -> Request:
 def read_rig(path: Path | str) -> tuple[Rig, Source]:
     """Read a rig file; raises InputError as `read_week` does."""
     path = Path(path)
-    text = _text_of(path)
+    text = text_of(path)
     return parse_rig(text, path.name), source("rig", path.name, text)
 
 
@@ -78,7 +78,7 @@ def request_of(sources: tuple[Source, ...]) -> Request:
 
 
 def _fitting(week: Week, rig: Rig, sources: tuple[Source, ...]) -> Request:
-    problems = _fit_problems(week, rig, next(source.path for source in sources if source.role == "week"))
+    problems = fit_problems(week, rig, next(source.path for source in sources if source.role == "week"))
     if problems:
         raise InputError(problems)
     return Request(week, rig, sources)
@@ -91,7 +91,12 @@ def source(role: _Role, path: str, text: str) -> Source:
 
 def parse_week(text: str, file: str = "week") -> Week:
     """A week from TOML text; raises InputError with every problem."""
-    data = migrate(_of_kind(_toml(text, file), "week", file), "week", file)
+    return week_of(_toml(text, file), file)
+
+
+def week_of(data: dict[str, Any], file: str = "week") -> Week:
+    """A week from its plain data; raises InputError with every problem."""
+    data = migrate(_of_kind(data, "week", file), "week", file)
     targets = data.get("targets")
     if isinstance(targets, list) and len(targets) > MOST_TARGETS:
         raise InputError([Problem(file, "targets", f"{len(targets)} rows", f"a week holds {MOST_TARGETS} at most")])
@@ -107,14 +112,19 @@ def parse_week(text: str, file: str = "week") -> Week:
 
 def parse_rig(text: str, file: str = "rig") -> Rig:
     """A rig from TOML text; raises InputError with every problem."""
-    data = migrate(_of_kind(_toml(text, file), "rig", file), "rig", file)
+    return rig_of(_toml(text, file), file)
+
+
+def rig_of(data: dict[str, Any], file: str = "rig") -> Rig:
+    """A rig from its plain data; raises InputError with every problem."""
+    data = migrate(_of_kind(data, "rig", file), "rig", file)
     rig, problems = _validate(Rig, data, file)
     if problems or rig is None:
         raise InputError(problems)
     return rig
 
 
-def _text_of(path: Path) -> str:
+def text_of(path: Path) -> str:
     """The text of a file, byte for byte, so that its hash is the file's."""
     name = path.name[:200] or "."
     try:
@@ -156,7 +166,8 @@ def _of_kind(data: dict[str, Any], kind: _Role, file: str) -> dict[str, Any]:
     return data
 
 
-def _rig_path(data: dict[str, Any], week: Path) -> Path:
+def rig_path(data: dict[str, Any], week: Path) -> Path:
+    """Path of the rig file that a week's data name; raises InputError where it is not in the week's folder or below."""
     written = data.get("rig")
     if not isinstance(written, str):
         raise InputError([])  # the missing or mistyped key is reported by the model
@@ -183,7 +194,7 @@ def _validate(model: type[_Model], data: dict[str, Any], file: str) -> tuple[_Mo
         return None, problems_of(error, model, file)
 
 
-def _fit_problems(week: Week, rig: Rig, file: str) -> list[Problem]:
+def fit_problems(week: Week, rig: Rig, file: str) -> list[Problem]:
     """What the week must say for this rig to be planned at all."""
     problems = []
     if rig.bath is not None and week.present.level_percent is None:

@@ -9,7 +9,7 @@ from pydantic import Field, model_validator
 
 from planner.files.hardware import Conductor, Cooldown, Winding
 from planner.files.hours import Hours
-from planner.files.model import LINE, Table
+from planner.files.model import LINE, LINES, Table
 from planner.units import (
     AmpereRate,
     CubicMetres,
@@ -281,7 +281,7 @@ class Rig(Table):
     format: Literal[1]
     kind: Literal["rig"]
     name: Annotated[str, Field(min_length=1, max_length=80, pattern=LINE)]
-    notes: str = ""
+    notes: Annotated[str, Field(max_length=2000, pattern=LINES)] = ""
     magnet: Magnet
     bath: Bath | None = None
     cooler: Cooler | None = None

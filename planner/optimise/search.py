@@ -15,7 +15,9 @@ from planner.optimise.result import Objective
 from planner.optimise.tables import Tables
 
 PIECE_S = 0.04
-POINT = 40.0  # weight of a point of prize, in typical arc costs: less gets stuck (measured), more is no better
+# weight of a take of average prize, in typical arc costs: a quarter loses takes, three times gains none (measured)
+TAKE = 40.0
+HOTTEST = 0.8  # first temperature, in typical arc costs
 
 
 class Annealer:
@@ -32,7 +34,9 @@ class Annealer:
         self.kernels = kernels
         near = near_nodes(problem, tables, costs)
         self.scale = self._typical(problem, costs.reach(tables), near)
-        weight = np.array([POINT * self.scale * (1.0 + float(problem.prize.sum())), POINT * self.scale])
+        worth = problem.prize[problem.prize > 0]
+        point = TAKE * self.scale / (float(worth.mean()) if worth.size else 1.0)
+        weight = np.array([point * (1.0 + float(problem.prize.sum())), point])
         moves = Moves(services_of(problem), near, partners(problem))
         self.search: Search = build_search(tables, moves, weight, seed)
         self.trials_per_s = 50.0
@@ -58,7 +62,7 @@ class Annealer:
     def run(self, trials: int, warm: float, warm_end: float) -> bool:
         """Do ``trials`` trials between two temperatures given as shares of the hottest; whether the best got better."""
         fresh, self._fresh = self._fresh, -1
-        hot = 0.6 * self.scale
+        hot = HOTTEST * self.scale
         return bool(self.kernels.anneal(self.search, fresh, trials, hot * warm, hot * warm_end))
 
     def piece(self, warm: float, warm_end: float, longest_s: float = PIECE_S) -> bool:

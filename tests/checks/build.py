@@ -75,7 +75,7 @@ class Writer:
         if self.rig.bath is None:
             return 0.0
         losses = self.rig.bath.losses
-        open_ = (before.mode is CoilMode.DRIVEN and action != "heater off") or action == "heater on"
+        open_ = CoilMode.DRIVEN in (before.mode, after.mode) and action != "heater off"
         mean_A = abs(before.lead_current_A[2] + after.lead_current_A[2]) / 2
         rate = losses.static_L_per_s + open_ * losses.switch_open_L_per_s + losses.leads_L_per_s_A * mean_A
         return rate * seconds + losses.moving_L_per_T * abs(after.field_T[2] - before.field_T[2])

@@ -318,3 +318,29 @@ def a_map_without_one_of_its_rungs() -> Judged:
         plan.change(40, [gates_leg(0, 40, high, end)])
     plan.ramp([0], [0.3])
     return done(plan)
+
+
+SECOND = {"second_gate": '"side"', "second_sweep": '"-0.1 V to 0.1 V"', "second_points": "3"}
+
+
+def two_gates(last: float) -> Judged:
+    """Three lines of a gate sweep, the second gate from −0.1 V to some voltage."""
+    text = week(target("Two", "gate sweep", field='"0 T"', direction='"up"', **SWEEP, **SECOND))
+    side = '  { name = "side", lowest = "-0.5 V", highest = "0.5 V", rate = "20 mV/s" },\n]\n\n[[samples]]'
+    plan = Writer(request(text.replace("]\n\n[[samples]]", side, 1)))
+    first, end = {"S/top": -0.4, "S/side": -0.1}, {"S/top": 0.4, "S/side": last}
+    rest = {"S/top": 0.0, "S/side": 0.0}
+    plan.change(20, [gates_leg(0, 20, rest, first)])
+    plan.take("Two", [plan.still(560), gates_leg(0, 560, first, end, "gate sweep")], direction="up")
+    plan.change(20, [gates_leg(0, 20, end, rest)])
+    return done(plan)
+
+
+@sound("gates of a take")
+def both_gates_over_their_ranges() -> Judged:
+    return two_gates(0.1)
+
+
+@plant("gates of a take", value=0.05, limit=0.1)
+def second_gate_that_stops_short() -> Judged:
+    return two_gates(0.05)

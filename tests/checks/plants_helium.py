@@ -274,3 +274,16 @@ def week_with_too_little_stock() -> Judged:
 @plant("helium to start a ramp", value=46, limit=50, at_s=0)
 def week_whose_ramps_wait_for_a_transfer() -> Judged:
     return request(week(target("Up", "hold", field='"1 T"', duration='"1 h"'), present='level = "48 %"')), None
+
+
+# 30 s of warming at 0.9 L/h; 20 min of ramp at 0.9 L/h + 25 A × 0.002 and 0.6 L; 11 370 s at 6 T, 1.0 L/h
+LEFT_L = 0.95 * 80 - 0.9 / 120 - (0.95 / 3 + 0.6) - 11_370 / 3600
+
+
+@plant("helium after the week", also=("last state",), value=LEFT_L - 0.42 * 80, limit=45, unit="h")
+def week_that_ends_driven_with_leads_that_burn() -> Judged:
+    # driven at 6 T with 50 A: 0.9 + 0.002 × 50 = 1.0 L/h, so as many hours as litres above the floor, 40 % trusted
+    burning = rig(switch_open='"0.35 L/h"\nleads = "0.002 L/h/A"')
+    plan = empty(burning, end="2031-03-03T12:00:00")
+    plan.ramp([6], [0.3])
+    return done(plan)

@@ -398,3 +398,21 @@ def persistent_overnight_where_forbidden() -> Judged:
 @sound("unattended persistent field")
 def persistent_by_day_where_forbidden() -> Judged:
     return back(parked(FORBIDDEN))
+
+
+@sound("charging voltage")
+def voltage_that_the_leads_help_down() -> Judged:
+    # up at 0.2 T/min: 0.5556 + 0.2 V; down at 0.3 T/min: −0.8333 + 0.2 V to −0.8333 V
+    plan = empty(rig(max_voltage='"0.8334 V"', lead_resistance='"3 mohm"'))
+    plan.ramp([8], [0.2])
+    plan.ramp([0], [0.3])
+    return done(plan)
+
+
+@plant("switch order")
+def leads_that_open_the_switch_by_themselves() -> Judged:
+    plan = parked()
+    opened = plan.leg("leads", 25, plan.state.coil, driven(6), 2.0)
+    plan.write(StepKind.MOVE, "open switch", [opened], attended=True, people=("Ada",))
+    plan.ramp([0], [0.3])
+    return done(plan)

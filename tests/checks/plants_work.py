@@ -286,3 +286,9 @@ def field_with_temperature_where_it_may() -> Judged:
     plan.ramp([0], [0.3])
     plan.change(DOWN_S, [stage_leg(0, DOWN_S, 0.1, 0.015, "cool")])
     return done(plan)
+
+
+@plant("quiet hours", value=2.5, limit=2, at_s=1.5 * HOUR + 40, unit="T")
+def field_that_passes_its_quiet_limit_in_quiet() -> Judged:
+    # 0.3 T/min: 1.8 T as quiet begins, 2 T 40 s later, 2.5 T after 500 s in all
+    return quiet_ramp(int(1.5 * HOUR) - 30 - 360, "field", 2.5)

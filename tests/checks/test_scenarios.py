@@ -266,6 +266,21 @@ duration = "1 h"
         for offer in ("ν = 2/3 at 10.24 T", "ν = 3/5 at 11.37 T", "0.967e11 cm^-2"):
             assert offer in asked.mend
 
+    def test_a_gate_that_brings_it_in_reach_is_offered(self) -> None:
+        gate = (
+            '{ name = "top", lowest = "-0.5 V", highest = "0.5 V", rate = "20 mV/s", density_slope = "1e11 cm^-2/V" }'
+        )
+        text = week('level = "100 %"', self.TARGET.format(filling="1/2"))
+        text = text.replace('density = "1.65e11 cm^-2"', f'density = "1.65e11 cm^-2"\ngates = [{gate}]')
+        # 12 T show 1/2 at 12 / 4.135668 / 2 = 1.4508e11 cm^-2: 0.1992e11 less, −0.1992 V
+        assert "gate top at −0.1992 V" in of(check_week(request(text)), "filling in reach").mend
+        far = text.replace('filling = "1/2"', 'filling = "1/3"')
+        # 0.9672e11 cm^-2 need −0.6828 V
+        assert (
+            "gate top at −0.6828 V, which is outside its window"
+            in of(check_week(request(far)), "filling in reach").mend
+        )
+
     def test_a_straddling_filling_is_provisional(self) -> None:
         # 4/7 lies at 11.94 T: 5 % of it reach beyond 12 T
         text = week('level = "100 %"', self.TARGET.format(filling="4/7"))

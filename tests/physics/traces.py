@@ -87,7 +87,9 @@ def sweep(field_T: Array, layer: Layer, faults: Faults, rng: np.random.Generator
     true_T = field_T - faults.remanence_T - faults.lag_T * heading
     hall, along = layer.hall_ohm(true_T), layer.longitudinal_ohm(true_T)
     hall = hall + faults.offset * np.max(np.abs(hall))
-    noisy = [values + faults.noise * np.max(np.abs(values)) * rng.standard_normal(values.size) for values in (hall, along)]
+    noisy = [
+        values + faults.noise * np.max(np.abs(values)) * rng.standard_normal(values.size) for values in (hall, along)
+    ]
     return field_T, noisy[0], noisy[1]
 
 

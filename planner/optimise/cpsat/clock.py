@@ -12,7 +12,7 @@ MOST_VERTICES = 34  # with more the times cost more than they bring (measured)
 
 def build(variables: Variables) -> None:
     """Add a start for each vertex, none if there are too many vertices."""
-    if len(variables.vertex_node) > MOST_VERTICES:
+    if variables.light or len(variables.vertex_node) > MOST_VERTICES:
         return
     problem, costs, model = variables.problem, variables.costs, variables.model
     starts: list[cp_model.IntVar] = [model.new_constant(0)]

@@ -67,11 +67,12 @@ def build_model(
     bound: Floors,
     *,
     musts: bool = True,
+    light: bool = False,
     halt: Callable[[], bool] = lambda: False,
 ) -> Model:
     """Variables, constraint families and the two objectives; raises `CancelledError` soon after ``halt`` is true."""
     model = cp_model.CpModel()
-    variables = build_variables(problem, tables, costs, model, halt)
+    variables = build_variables(problem, tables, costs, model, halt, light=light)
     routing.build(variables, musts=musts)
     spans.build(variables)
     levels.build(variables)

@@ -8,11 +8,11 @@ from planner.optimise.cpsat.variables import DEPOT, Variables
 def build(variables: Variables, *, musts: bool) -> None:
     """Add the circuit, one node a take (exactly one for a must if ``musts``), precedence and the turn of copies."""
     model = variables.model
-    nothing = model.new_bool_var("nothing done")
-    arcs = list(variables.arcs)
-    loops = [(v, v, ~done) for v, done in enumerate(variables.done) if v != DEPOT]
-    model.add_circuit([*arcs, *loops, (DEPOT, DEPOT, nothing)])
-    variables.nothing = nothing
+    if not variables.light:
+        nothing = model.new_bool_var("nothing done")
+        loops = [(v, v, ~done) for v, done in enumerate(variables.done) if v != DEPOT]
+        model.add_circuit([*variables.arcs, *loops, (DEPOT, DEPOT, nothing)])
+        variables.nothing = nothing
     for take in range(variables.problem.takes):
         visits = variables.visits(take)
         if musts and variables.problem.must[take]:

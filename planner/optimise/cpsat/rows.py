@@ -21,6 +21,11 @@ def total(
     """
     variables.breathe()
     leave, enter = variables.places()
+    node = node.astype(np.float64)
+    if variables.light:
+        into = arc[variables.problem.exit].min(axis=0)[variables.problem.entry]
+        node = node + into
+        end += float(into[variables.problem.END])
     literals: list[Any] = [literal for _, _, literal in variables.arcs]
     weights = [math.floor(w * scale + 1e-9) for w in np.asarray(arc)[leave, enter].tolist()] if leave else []
     constant = math.floor(end * scale)

@@ -17,6 +17,7 @@ from planner.optimise.moves import Costs
 from planner.optimise.problem import Problem
 from planner.optimise.tables import Tables
 
+LIGHT_SHARE = 0.1  # of the time that the light model may take
 MOST_NODES = 420  # beyond, building the model alone takes longer than it brings
 
 
@@ -31,6 +32,8 @@ class _Listener(cp_model.CpSolverSolutionCallback):  # type: ignore[misc]  # OR-
         self._found = found
 
     def on_solution_callback(self) -> None:
+        if self._variables.light:
+            return
         taken = [bool(self.boolean_value(literal)) for _, _, literal in self._variables.arcs]
         self._found(self._variables.order(taken))
 
@@ -81,25 +84,27 @@ class Relaxation:
         return orders
 
     def run(self) -> None:
-        """Stage 1: bound the prize. Stage 2: bound the cost at the prize reached."""
-        if self._problem.nodes > MOST_NODES:
-            return
+        """Bound the prize, then the cost at the prize reached; each first in a light model, there in a moment."""
         with contextlib.suppress(CancelledError):
-            self._stages()
+            self._stages(self._build(light=True), LIGHT_SHARE)
+            if self._problem.nodes <= MOST_NODES:
+                self._stages(self._build(light=False), 1.0)
 
-    def _stages(self) -> None:
+    def _build(self, *, light: bool) -> Model:
         cancelled = self._cancelled.is_set
-        model = build_model(self._problem, self._tables, self._costs, self._floors, halt=cancelled)
+        return build_model(self._problem, self._tables, self._costs, self._floors, halt=cancelled, light=light)
+
+    def _stages(self, model: Model, share: float) -> None:
         if not self._incumbent.prize_proven:
-            self._most_prize(model, 0.5)
+            self._most_prize(model, share * 0.5)
         while not self._cancelled.is_set() and not self._incumbent.proven_infeasible:
             objective = self._incumbent.objective
             if objective is None or objective.missing:
                 return
             prize = objective.prize
-            self._least_cost(model, prize)
+            self._least_cost(model, prize, share * (0.5 if self._deterministic or share < 1.0 else 1.0))
             objective = self._incumbent.objective
-            if objective is None or objective.prize == prize or self._left() <= 0.2:
+            if share < 1.0 or objective is None or objective.prize == prize or self._left() <= 0.2:
                 return
 
     def _left(self) -> float:
@@ -114,13 +119,13 @@ class Relaxation:
         if status == cp_model.INFEASIBLE:
             self._incumbent.proven_infeasible = True
 
-    def _least_cost(self, model: Model, prize: int) -> None:
+    def _least_cost(self, model: Model, prize: int, share: float) -> None:
         def bounded(value: float) -> None:
             self._incumbent.bound(cost=model.true_cost(value))
 
         best = self._incumbent.best
         assert best is not None
-        self._solve(model, model.least_cost(best.order, prize), 0.5 if self._deterministic else 1.0, bounded)
+        self._solve(model, model.least_cost(best.order, prize), share, bounded)
 
     def _solve(
         self, model: Model, asked: cp_model.CpModel, share: float, bounded: Callable[[float], None]

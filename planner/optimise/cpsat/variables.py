@@ -28,6 +28,7 @@ class Variables:
     """Vertices are uses of nodes: ``vertex_node[v]`` is the node, vertex 0 stands for start and end.
 
     ``arcs`` are (from, to, literal), ``done[v]`` whether a vertex is visited, ``poured[v]`` its amount if it refills.
+    A ``light`` model has no arcs: every visit is entered by whatever arc weighs least in each row.
     """
 
     problem: Problem
@@ -41,6 +42,7 @@ class Variables:
     arcs: list[tuple[int, int, cp_model.IntVar]] = field(default_factory=list)
     nothing: cp_model.IntVar | None = None
     halt: Callable[[], bool] = lambda: False
+    light: bool = False
 
     def breathe(self) -> None:
         """Called now and then while the model is built: raises `CancelledError` if that is to stop."""
@@ -86,7 +88,13 @@ class Variables:
 
 
 def build_variables(
-    problem: Problem, tables: Tables, costs: Costs, model: cp_model.CpModel, halt: Callable[[], bool]
+    problem: Problem,
+    tables: Tables,
+    costs: Costs,
+    model: cp_model.CpModel,
+    halt: Callable[[], bool],
+    *,
+    light: bool = False,
 ) -> Variables:
     """Vertices, arcs that may be part of an order, pours."""
     variables = Variables(problem, tables, costs, model, [Problem.START], [0], [model.new_constant(1)])
@@ -99,7 +107,9 @@ def build_variables(
             if tables.node[node, REFILL] >= 0:
                 top = int(min(max(_most(problem, tables, node), 0.0) * POUR_SCALE, 1e9)) + 1
                 variables.poured[vertex] = model.new_int_var(0, top, f"poured {node} {copy}")
-    variables.halt = halt
+    variables.halt, variables.light = halt, light
+    if light:
+        return variables
     possible = _possible(variables)
     variables.arcs = [(a, b, model.new_bool_var("")) for a, b in np.argwhere(possible).tolist()]
     return variables

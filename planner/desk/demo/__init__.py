@@ -1,0 +1,1 @@
+"""The small demo week and its rig, opened the first time."""
