@@ -60,6 +60,12 @@ class Question:
         What the file says beside an offer that was taken unseen.
     puts
         Where the value goes, if it is not simply put at ``parts``.
+    holds
+        What a file answers, if that is not simply the text at ``parts``.
+    says
+        What an answer's text means, where that is worth saying.
+    heading
+        The part of the conversation it belongs to.
     """
 
     parts: Parts
@@ -71,6 +77,8 @@ class Question:
     optional: bool = False
     mark: str = ""
     puts: Callable[[Any], Mapping[Parts, Any]] | None = None
+    holds: Callable[[dict[str, Any]], str | None] | None = None
+    says: Callable[[str], str] | None = None
     heading: str = ""
 
     def value_of(self, text: str) -> Any:
@@ -115,7 +123,11 @@ def value(
         return found.value
 
     marked = MAKER if field.kind is FieldKind.QUANTITY else OWN
-    return Question(parts, ask, why, offer, read, wanted(field), optional=not field.required, mark=mark or marked)
+    def says(text: str) -> str:
+        return explain(field, text).message
+
+    optional = not field.required
+    return Question(parts, ask, why, offer, read, wanted(field), optional, mark or marked, says=says)
 
 
 def field_at(model: type[Table], key: Parts) -> Field:
@@ -131,11 +143,24 @@ def count(parts: Parts, ask: str, why: str, offer: int, least: int, most: int) -
             return int(text)
         raise ValueError(f"expected a whole number from {least} to {most}")
 
-    return Question(parts, ask, why, str(offer), read, f"a whole number from {least} to {most}", puts=lambda _: {})
+    def holds(data: dict[str, Any]) -> str | None:
+        if not isinstance(value_at(data, parts[:-1]), dict):
+            return None
+        return str(len(value_at(data, parts) or ()))
+
+    whole = f"a whole number from {least} to {most}"
+    return Question(parts, ask, why, str(offer), read, whole, puts=lambda number: {parts: Rows(number)}, holds=holds)
 
 
-def choice(parts: Parts, ask: str, why: str, offer: str, choices: tuple[str, ...]) -> Question:
-    """One of several words; nothing is put into the file for it."""
+def choice(
+    ask: str,
+    why: str,
+    offer: str,
+    choices: tuple[str, ...],
+    puts: Callable[[str], Mapping[Parts, Any]],
+    holds: Callable[[dict[str, Any]], str | None],
+) -> Question:
+    """One of several words, each of which means something else for the file."""
 
     def read(text: str) -> str:
         begun = [one for one in choices if one.startswith(text.lower())]
@@ -143,7 +168,17 @@ def choice(parts: Parts, ask: str, why: str, offer: str, choices: tuple[str, ...
             raise ValueError(f"expected one of {', '.join(choices)}")
         return text.lower() if text.lower() in choices else begun[0]
 
-    return Question(parts, ask, why, offer, read, "one of " + ", ".join(choices), puts=lambda _: {})
+    return Question((), ask, why, offer, read, "one of " + ", ".join(choices), puts=puts, holds=holds)
+
+
+def under(heading: str, script: Generator[Question, Any, Any]) -> Generator[Question, Any, Any]:
+    """A script's questions under a heading; gives what the script gives."""
+    try:
+        question = next(script)
+        while True:
+            question = script.send((yield replace(question, heading=heading)))
+    except StopIteration as end:
+        return end.value
 
 
 class Asking:
@@ -176,12 +211,13 @@ class Asking:
         """What has been answered."""
         return tuple(self._answers)
 
-    def answer(self, text: str) -> Any:
+    def answer(self, text: str) -> str:
         """Take an answer; an empty one takes the offer.
 
         Returns
         -------
-        The value that goes into the file.
+        str
+            What the answer means, where that is worth saying.
 
         Raises
         ------
@@ -199,7 +235,7 @@ class Asking:
             raise ValueError("; ".join(problems[:3]))
         self._answers.append(answer)
         self._current = self._next()
-        return answer.value
+        return question.says(text) if text and text != LEAVE_OUT and question.says else ""
 
     def back(self) -> None:
         """Take the last answer back."""
@@ -252,14 +288,14 @@ class Asking:
 
     def _held(self, question: Question) -> str | None:
         """What the start file says here, as text; None where it says nothing that can be used."""
-        found = value_at(self._start, question.parts)
-        text = str(len(found)) if question.puts is not None and isinstance(found, list) else shown(found)
-        if found is None and question.optional and isinstance(value_at(self._start, question.parts[:-1]), dict):
-            return LEAVE_OUT if self._start else None
-        if question.puts is not None and not isinstance(found, (list, str)):
-            return None
+        if question.holds is not None:
+            text = question.holds(self._start)
+        else:
+            found = value_at(self._start, question.parts)
+            left_out = found is None and isinstance(value_at(self._start, question.parts[:-1]), dict)
+            text = LEAVE_OUT if left_out and question.optional else shown(found)
         try:
-            question.value_of(text)
+            question.value_of(text or "")
         except ValueError:
             return None
         return text or None
@@ -297,7 +333,10 @@ def _put(data: dict[str, Any], parts: Parts, put: Any) -> None:
         table.pop(last, None)
         return
     if isinstance(put, Rows):
-        del table.setdefault(last, [])[put.number :]
+        if put.number:
+            del table.setdefault(last, [])[put.number :]
+        else:
+            table.pop(last, None)
         return
     if last == "kind" and parts[0] == "targets" and table.get("kind", put) != put:
         table.clear()

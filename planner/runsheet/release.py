@@ -4,14 +4,15 @@ from __future__ import annotations
 
 from planner.errors import RefusedError
 from planner.files import Rig
-from planner.plan import Finding, Kind, Plan
+from planner.plan import Finding, Kind, Plan, StepKind, magnitude
 from planner.runsheet.wording import clean, significant
 
 
 def refuse_unless_runnable(plan: Plan, rig: Rig) -> None:
     """Let a plan pass that may be run.
 
-    A recovery plan always passes: it only runs down, calls people and transfers.
+    A plan that only runs down, calls people and transfers always passes; one that goes on to other work after a recovery
+    is judged by its findings as any other.
 
     Raises
     ------
@@ -19,7 +20,7 @@ def refuse_unless_runnable(plan: Plan, rig: Rig) -> None:
         If the plan has a `stop` or a `policy` finding. The message gives every such finding with its rule, numbers and
         how to mend it, and says who could waive a site rule.
     """
-    if plan.recovery:
+    if plan.recovery and only_recovers(plan):
         return
     stops = [finding for finding in plan.findings if finding.kind == Kind.STOP]
     rules = [finding for finding in plan.findings if finding.kind == Kind.POLICY]
@@ -35,6 +36,13 @@ def refuse_unless_runnable(plan: Plan, rig: Rig) -> None:
         lines.append(f"Only {waived_by(rig)} could waive a site rule, and no waiver is recorded with this plan.")
     lines.append("Mend the week and plan again. A review copy, marked as not to be run, can still be written.")
     raise RefusedError("\n".join(lines))
+
+
+def only_recovers(plan: Plan) -> bool:
+    """Whether a plan measures nothing and never raises the field."""
+    coils = (leg.coil for step in plan.steps for leg in step.legs if leg.coil is not None)
+    rises = any(magnitude(after.field_T) > magnitude(before.field_T) for before, after in coils)
+    return not rises and all(step.kind is not StepKind.TAKE for step in plan.steps)
 
 
 def waived_by(rig: Rig) -> str:

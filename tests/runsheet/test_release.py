@@ -8,7 +8,7 @@ from pathlib import Path
 import pytest
 
 from planner.errors import RefusedError
-from planner.plan import Kind, Plan
+from planner.plan import Kind, Plan, StepKind, magnitude
 from planner.runsheet import write_sheets
 from tests.runsheet.plans import with_finding
 
@@ -38,12 +38,29 @@ def test_other_findings_do_not_refuse(small: Plan, tmp_path: Path, kind: Kind) -
     assert len(write_sheets(with_finding(small, kind), tmp_path, ("csv",))) == 1
 
 
+def only_recovering(plan: Plan) -> Plan:
+    """A plan of its waits, its transfers and its ways down."""
+    kept = [
+        step
+        for step in plan.steps
+        if step.kind is not StepKind.TAKE
+        and all(magnitude(leg.coil[1].field_T) <= magnitude(leg.coil[0].field_T) for leg in step.legs if leg.coil)
+    ]
+    return replace(plan, steps=tuple(kept), recovery=True)
+
+
 @pytest.mark.parametrize("kind", [Kind.STOP, Kind.POLICY])
 def test_a_recovery_plan_is_always_written_and_says_so(small: Plan, tmp_path: Path, kind: Kind) -> None:
-    plan = replace(with_finding(small, kind), recovery=True)
+    plan = only_recovering(with_finding(small, kind))
     pages = [path.read_text(encoding="utf-8") for path in write_sheets(plan, tmp_path, ("html", "csv"))]
     assert all("RECOVERY PLAN" in page for page in pages)
     assert "REVIEW COPY" not in pages[0]
+
+
+@pytest.mark.parametrize("kind", [Kind.STOP, Kind.POLICY])
+def test_a_plan_that_measures_after_its_recovery_is_judged_as_any_other(small: Plan, tmp_path: Path, kind: Kind) -> None:
+    with pytest.raises(RefusedError):
+        write_sheets(replace(with_finding(small, kind), recovery=True), tmp_path)
 
 
 @pytest.mark.parametrize("kind", [Kind.STOP, Kind.POLICY])
