@@ -13,13 +13,15 @@ from dataclasses import dataclass, replace
 from typing import Any
 
 from planner.desk.fields import Field, FieldKind, fields_of
-from planner.desk.place import Part, value_at
+from planner.desk.place import Part, Place, value_at
 from planner.desk.values import explain, shown, wanted
+from planner.errors import Problem, printable
+from planner.files import Rig, Week
 from planner.files.model import Table
 
 Parts = tuple[Part, ...]
 Script = Generator["Question", Any, None]
-Judge = Callable[[dict[str, Any]], list[str]]
+Judge = Callable[[dict[str, Any]], list[Problem]]
 
 LEAVE_OUT = "-"
 MAKER = "offer, put your own maker's number here"
@@ -66,6 +68,8 @@ class Question:
         What an answer's text means, where that is worth saying.
     heading
         The part of the conversation it belongs to.
+    kept
+        The value that stands for the offer, where the offer is what a file holds already.
     """
 
     parts: Parts
@@ -80,6 +84,7 @@ class Question:
     holds: Callable[[dict[str, Any]], str | None] | None = None
     says: Callable[[str], str] | None = None
     heading: str = ""
+    kept: Any = None
 
     def value_of(self, text: str) -> Any:
         """The value of a text; raises ValueError."""
@@ -92,6 +97,11 @@ class Question:
         if not text:
             raise ValueError(f"an answer is needed: {self.wanted}")
         return self.read(text)
+
+    @property
+    def offered(self) -> Any:
+        """The value of the offer; raises ValueError where there is none."""
+        return self.value_of(self.offer) if self.kept is None else self.kept
 
     def places(self, value: Any) -> Mapping[Parts, Any]:
         """Where the value goes in the file."""
@@ -123,6 +133,7 @@ def value(
         return found.value
 
     marked = MAKER if field.kind is FieldKind.QUANTITY else OWN
+
     def says(text: str) -> str:
         return explain(field, text).message
 
@@ -230,9 +241,9 @@ class Asking:
         if len(text) > LONGEST_ANSWER or not text.isprintable():
             raise ValueError(f"expected one line of at most {LONGEST_ANSWER} characters: {question.wanted}")
         text = text.strip()
-        answer = Answer(question, question.value_of(text or question.offer), not text)
+        answer = Answer(question, question.value_of(text) if text else question.offered, unseen=not text)
         if problems := self._problems([*self._answers, answer]):
-            raise ValueError("; ".join(problems[:3]))
+            raise ValueError("; ".join(_told(problem, question.parts) for problem in problems[:3]))
         self._answers.append(answer)
         self._current = self._next()
         return question.says(text) if text and text != LEAVE_OUT and question.says else ""
@@ -244,7 +255,21 @@ class Asking:
             self._current = self._next()
 
     def take_offers(self) -> None:
-        """Answer everything that is left with the offers."""
+        """Answer everything that is left with the offers.
+
+        Raises
+        ------
+        ValueError
+            If a question is left that has no offer; the conversation then stands before it.
+        """
+        for held in (True, False):
+            try:
+                whole = self._completed(self._answers, held=held)
+            except ValueError:
+                continue
+            if not self._judge(self._content(whole)):
+                self._answers, self._current = whole, None
+                return
         while self._current is not None:
             self.answer("")
 
@@ -261,8 +286,8 @@ class Asking:
                 _put(data, parts, put)
         return data
 
-    def _completed(self, answers: list[Answer], *, held: bool) -> dict[str, Any]:
-        """The content with offers for all that is not answered: those of the file, or the general ones."""
+    def _completed(self, answers: list[Answer], *, held: bool) -> list[Answer]:
+        """The answers with offers for all that is not answered: those of the file, or the general ones."""
         script = self._script()
         question = next(script)
         whole = list(answers)
@@ -270,35 +295,45 @@ class Asking:
             for answer in answers:
                 question = script.send(answer.value)
             while True:
-                offered = self._held(question) if held else None
-                given = question.offer if offered is None else offered
-                whole.append(Answer(question, question.value_of(given), unseen=True))
+                question = self._held(question) if held else question
+                whole.append(Answer(question, question.offered, unseen=True))
                 question = script.send(whole[-1].value)
         except StopIteration:
-            return self._content(whole)
+            return whole
 
-    def _problems(self, answers: list[Answer]) -> list[str]:
+    def _problems(self, answers: list[Answer]) -> list[Problem]:
         """What is wrong with these answers, whatever may follow; the start file's values are tried first."""
-        problems: list[str] = []
+        problems: list[Problem] = []
         for held in (True, False) if self._start else (False,):
-            problems = self._judge(self._completed(answers, held=held))
+            problems = self._judge(self._content(self._completed(answers, held=held)))
             if not problems:
                 return []
         return problems
 
-    def _held(self, question: Question) -> str | None:
-        """What the start file says here, as text; None where it says nothing that can be used."""
+    def _held(self, question: Question) -> Question:
+        """The question with what the start file says here as its offer; as it is where that says nothing usable."""
+        found = None
+        if not self._start:
+            return question
         if question.holds is not None:
-            text = question.holds(self._start)
+            text = question.holds(self._start) or ""
         else:
             found = value_at(self._start, question.parts)
-            left_out = found is None and isinstance(value_at(self._start, question.parts[:-1]), dict)
-            text = LEAVE_OUT if left_out and question.optional else shown(found)
+            text = LEAVE_OUT if found is None and question.optional and self._has_table(question.parts) else shown(found)
         try:
-            question.value_of(text or "")
+            value = question.value_of(text) if text else None
         except ValueError:
-            return None
-        return text or None
+            return question
+        if value is None:
+            return question
+        return replace(question, offer=text, mark="", kept=value if found is None else found)
+
+    def _has_table(self, parts: Parts) -> bool:
+        """Whether the start file says something of this kind: the table is there, or may be left out as a whole."""
+        if isinstance(value_at(self._start, parts[:-1]), dict):
+            return True
+        model = Week if self._start.get("kind") == "week" else Rig
+        return len(parts) == 2 and isinstance(model.model_fields[str(parts[0])].default, Table)
 
     def _next(self) -> Question | None:
         script = self._script()
@@ -308,12 +343,17 @@ class Asking:
                 question = script.send(answer.value)
         except StopIteration:
             return None
-        held = self._held(question) if self._start else None
-        if held is not None:
-            trial = replace(question, offer=held, mark="")
-            if not self._problems([*self._answers, Answer(trial, trial.value_of(held), unseen=True)]):
-                return trial
-        return question
+        held = self._held(question)
+        if held is not question and self._problems([*self._answers, Answer(held, held.offered, unseen=True)]):
+            return question
+        return held
+
+
+def _told(problem: Problem, parts: Parts) -> str:
+    """A problem as the answer to a question: its place is said where it is another one."""
+    place = "" if problem.where == Place("week", parts).where else f"{problem.where}: "
+    hint = f" ({problem.hint})" if problem.hint else ""
+    return printable(f"{place}{problem.expected}{hint}")
 
 
 def _put(data: dict[str, Any], parts: Parts, put: Any) -> None:

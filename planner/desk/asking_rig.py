@@ -11,6 +11,7 @@ from typing import Any
 from planner.desk.asking import (
     LEFT_OUT,
     MEASURED,
+    OWN,
     Parts,
     Question,
     Script,
@@ -57,7 +58,9 @@ def rig_script() -> Script:
 
 
 def _rig() -> Generator[Question, Any, bool]:
-    yield value(Rig, ("name",), "Name of the rig", "It heads every sheet, so that nobody takes it to the wrong rig.", "Our rig")
+    yield value(
+        Rig, ("name",), "Name of the rig", "It heads every sheet, so that nobody takes it to the wrong rig.", "Our rig"
+    )
     cooling = yield choice(
         "Is the coil in a helium bath or on a cooler?",
         "A bath is planned with its level, losses and transfers; a cryogen-free cooler has none of these.",
@@ -71,7 +74,9 @@ def _rig() -> Generator[Question, Any, bool]:
 
 def _magnet(wet: bool) -> Generator[Question, Any, bool]:
     at: Parts = ("magnet",)
-    rated = yield value(Magnet, (*at, "rated_field"), "Rated field", "No plan goes beyond it.", "12 T" if wet else "9 T")
+    rated = yield value(
+        Magnet, (*at, "rated_field"), "Rated field", "No plan goes beyond it.", "12 T" if wet else "9 T"
+    )
     field_T = number(rated, "T")
     per_current = yield value(
         Magnet,
@@ -82,7 +87,9 @@ def _magnet(wet: bool) -> Generator[Question, Any, bool]:
     )
     yield value(Magnet, (*at, "inductance"), "Inductance", "With the ramp rate it gives the charging voltage.", "18 H")
     yield from _ramp_table(rated, field_T)
-    yield value(Magnet, (*at, "settle"), "Settling time after a ramp", "Data wait until field and stage are at rest.", "2 min")
+    yield value(
+        Magnet, (*at, "settle"), "Settling time after a ramp", "Data wait until field and stage are at rest.", "2 min"
+    )
     yield from _supply(field_T / number(per_current, "T/A"), field_T)
     switch = yield choice(
         "Has it a persistent switch?",
@@ -134,13 +141,23 @@ def _supply(most_A: float, field_T: float) -> Script:
     )
     leads_ohm = min(0.004, 0.5 * number(voltage, "V") / max(number(current, "A"), most_A, 10 * field_T))
     yield value(
-        Supply, (*at, "lead_resistance"), "Resistance of the leads", "They take their share of the voltage.", f"{tidy(1e3 * leads_ohm)} mohm"
+        Supply,
+        (*at, "lead_resistance"),
+        "Resistance of the leads",
+        "They take their share of the voltage.",
+        f"{tidy(1e3 * leads_ohm)} mohm",
     )
     polarity = yield value(
-        Supply, (*at, "polarity"), "Polarity", "A unipolar supply stops at zero before the field changes its sign.", "bipolar"
+        Supply,
+        (*at, "polarity"),
+        "Polarity",
+        "A unipolar supply stops at zero before the field changes its sign.",
+        "bipolar",
     )
     if polarity == "unipolar":
-        yield value(Supply, (*at, "reversal"), "Time to change the polarity", "Every plan through zero pays it.", "3 min")
+        yield value(
+            Supply, (*at, "reversal"), "Time to change the polarity", "Every plan through zero pays it.", "3 min"
+        )
 
 
 def _switch() -> Script:
@@ -148,29 +165,81 @@ def _switch() -> Script:
     for key, ask, why, offer in (
         ("warm", "Warming the switch", "The heater is on so long before the coil may be driven.", "30 s"),
         ("cool", "Cooling the switch", "The leads come down only when the switch is closed for certain.", "60 s"),
-        ("hold_before", "Hold at the field before the heater goes off", "Drift of a fresh field is then over.", "5 min"),
+        (
+            "hold_before",
+            "Hold at the field before the heater goes off",
+            "Drift of a fresh field is then over.",
+            "5 min",
+        ),
         ("settle_after", "Rest after the leads have moved", "The lead current is then read and matched.", "10 s"),
         ("leads", "Lead rate with the switch closed", "Leads may move faster than the coil.", "110 A/min"),
         ("match", "Largest mismatch at heater on", "A switch opened on other current quenches the coil.", "0.1 A"),
-        ("attended", "Must somebody be there when switch and leads are worked?", "It decides which nights can be persistent.", "yes"),
+        (
+            "attended",
+            "Must somebody be there when switch and leads are worked?",
+            "It decides which nights can be persistent.",
+            "yes",
+        ),
     ):
         yield value(Switch, (*at, key), ask, why, offer)
 
 
 def _bath() -> Script:
     at: Parts = ("bath",)
-    error = yield value(Bath, (*at, "gauge_error"), "Error of the level gauge", "Every verdict is on the reading less this.", "2 %", mark=MEASURED)
-    rows = yield count((*at, "calibration"), "Rows of the gauge's calibration", "Losses act on litres, the gauge reads per cent.", 3, 2, 50)
+    error = yield value(
+        Bath,
+        (*at, "gauge_error"),
+        "Error of the level gauge",
+        "Every verdict is on the reading less this.",
+        "2 %",
+        mark=MEASURED,
+    )
+    rows = yield count(
+        (*at, "calibration"),
+        "Rows of the gauge's calibration",
+        "Losses act on litres, the gauge reads per cent.",
+        3,
+        2,
+        50,
+    )
     level, volume = -1.0, -1.0
     first = 0.0
     for row in range(rows):
         left = rows - row
-        offers = ("0 %", "0 L") if row == 0 else (f"{between(level, 100, left - 1)} %", f"{between(volume, max(72, 1.5 * volume), left - 1)} L")
+        offers = (
+            ("0 %", "0 L")
+            if row == 0
+            else (f"{between(level, 100, left - 1)} %", f"{between(volume, max(72, 1.5 * volume), left - 1)} L")
+        )
         if left == 1:
             offers = "100 %" if level < 100 else offers[0], f"{tidy(max(72.0, 1.5 * volume))} L"
         which = f"Row {row + 1} of {rows}"
-        level = number((yield value(LevelPoint, (*at, "calibration", row, "level"), f"{which}: level", "As the gauge reads it, lowest first.", offers[0], mark=MEASURED)), "percent")
-        volume = number((yield value(LevelPoint, (*at, "calibration", row, "volume"), f"{which}: litres in the bath", "Measured when the bath was filled.", offers[1], mark=MEASURED)), "L")
+        level = number(
+            (
+                yield value(
+                    LevelPoint,
+                    (*at, "calibration", row, "level"),
+                    f"{which}: level",
+                    "As the gauge reads it, lowest first.",
+                    offers[0],
+                    mark=MEASURED,
+                )
+            ),
+            "percent",
+        )
+        volume = number(
+            (
+                yield value(
+                    LevelPoint,
+                    (*at, "calibration", row, "volume"),
+                    f"{which}: litres in the bath",
+                    "Measured when the bath was filled.",
+                    offers[1],
+                    mark=MEASURED,
+                )
+            ),
+            "L",
+        )
         first = level if row == 0 else first
     yield from _lines(first - number(error, "percent"))
     yield from _losses()
@@ -224,17 +293,34 @@ def _cooler() -> Script:
 
 def _stage(wet: bool) -> Script:
     at: Parts = ("stage",)
-    kind = yield value(StagePart, (*at, "kind"), "Kind of stage", "One that holds a mixture goes no higher than that allows.", "dilution" if wet else "continuous")
+    kind = yield value(
+        StagePart,
+        (*at, "kind"),
+        "Kind of stage",
+        "One that holds a mixture goes no higher than that allows.",
+        "dilution" if wet else "continuous",
+    )
     cold = kind == "dilution"
-    base = yield value(StagePart, (*at, "base"), "Base temperature", "The coldest that anything can be asked for.", "15 mK" if cold else "1.5 K", mark=MEASURED)
+    base = yield value(
+        StagePart,
+        (*at, "base"),
+        "Base temperature",
+        "The coldest that anything can be asked for.",
+        "15 mK" if cold else "1.5 K",
+        mark=MEASURED,
+    )
     offer_K = max(0.9 if cold else 60.0, 2 * number(base, "K"))
-    highest = yield value(StagePart, (*at, "highest"), "Highest temperature", "Nothing warmer is planned.", _kelvin(offer_K))
+    highest = yield value(
+        StagePart, (*at, "highest"), "Highest temperature", "Nothing warmer is planned.", _kelvin(offer_K)
+    )
     way = yield choice(
         "Are its times known from a measured table, or from time constants?",
         "Warming and cooling take most of a temperature series.",
         "table" if cold else "constants",
         ("table", "constants"),
-        lambda word: {(*at, "model"): LEFT_OUT} if word == "table" else {(*at, "warming"): LEFT_OUT, (*at, "cooling"): LEFT_OUT},
+        lambda word: (
+            {(*at, "model"): LEFT_OUT} if word == "table" else {(*at, "warming"): LEFT_OUT, (*at, "cooling"): LEFT_OUT}
+        ),
         lambda data: "constants" if value_at(data, (*at, "model")) else "table",
     )
     if way == "table":
@@ -242,11 +328,32 @@ def _stage(wet: bool) -> Script:
         yield from _times("cooling", "from", CoolingPoint, base, highest, (25, 45, 75, 120))
     else:
         yield from _model()
-    rows = yield count((*at, "after_ramp"), "Rows of settling after a ramp", "A ramp warms a cold stage by eddy currents.", int(cold), 0, 20)
+    rows = yield count(
+        (*at, "after_ramp"),
+        "Rows of settling after a ramp",
+        "A ramp warms a cold stage by eddy currents.",
+        int(cold),
+        0,
+        20,
+    )
     for row in range(rows):
         offer_K = max(4 * number(base, "K"), 0.06)
-        yield value(SettleAfterRamp, (*at, "after_ramp", row, "below"), f"Row {row + 1}: for temperatures below", "Warmer ones do not notice.", _kelvin(offer_K), mark=MEASURED)
-        yield value(SettleAfterRamp, (*at, "after_ramp", row, "time"), f"Row {row + 1}: time to come back", "Data wait for it.", "15 min", mark=MEASURED)
+        yield value(
+            SettleAfterRamp,
+            (*at, "after_ramp", row, "below"),
+            f"Row {row + 1}: for temperatures below",
+            "Warmer ones do not notice.",
+            _kelvin(offer_K),
+            mark=MEASURED,
+        )
+        yield value(
+            SettleAfterRamp,
+            (*at, "after_ramp", row, "time"),
+            f"Row {row + 1}: time to come back",
+            "Data wait for it.",
+            "15 min",
+            mark=MEASURED,
+        )
 
 
 def _model() -> Script:
@@ -272,7 +379,14 @@ def _times(name: str, key: str, model: Any, base: str, highest: str, minutes: tu
         kelvin = number((yield value(model, (*at, row, key), which, why, offer, mark=MEASURED)), "K")
         usual = minutes[min(row, len(minutes) - 1)]
         offer = f"{usual} min" if 60 * usual >= longest_s else longest
-        longest = yield value(model, (*at, row, "time"), f"Row {row + 1} of {rows}: time", f"Measured {way}, settled.", offer, mark=MEASURED)
+        longest = yield value(
+            model,
+            (*at, row, "time"),
+            f"Row {row + 1} of {rows}: time",
+            f"Measured {way}, settled.",
+            offer,
+            mark=MEASURED,
+        )
         longest_s = number(longest, "s")
 
 
@@ -289,16 +403,43 @@ def _between_kelvin(low_K: float, high_K: float, rows: int) -> str:
 
 
 def _room() -> Script:
-    yield value(Room, ("room", "volume"), "Volume of the room", "For the oxygen that is left if the bath boils away.", "140 m^3")
-    rows = yield count(("room", "contacts"), "People to call", "Their roles stand on every sheet, the first one first.", 1, 0, 10)
+    yield value(
+        Room,
+        ("room", "volume"),
+        "Volume of the room",
+        "For the oxygen that is left if the bath boils away.",
+        "140 m^3",
+        mark=OWN,
+    )
+    rows = yield count(
+        ("room", "contacts"), "People to call", "Their roles stand on every sheet, the first one first.", 1, 0, 10
+    )
     for row in range(rows):
         at: Parts = ("room", "contacts", row)
-        yield value(Contact, (*at, "role"), f"Contact {row + 1}: role", "A role, no private name.", "Rig responsible" if row == 0 else f"Contact {row + 1}")
+        yield value(
+            Contact,
+            (*at, "role"),
+            f"Contact {row + 1}: role",
+            "A role, no private name.",
+            "Rig responsible" if row == 0 else f"Contact {row + 1}",
+        )
         yield value(Contact, (*at, "reach"), f"Contact {row + 1}: how to reach", "At night too.", "see the door")
 
 
 def _policies(persistent: bool) -> Script:
     at: Parts = ("policies",)
-    yield value(Policies, (*at, "together"), "What may move at the same time", "The rest moves one after the other.", "field, temperature, gates")
+    yield value(
+        Policies,
+        (*at, "together"),
+        "What may move at the same time",
+        "The rest moves one after the other.",
+        "field, temperature, gates",
+    )
     if persistent:
-        yield value(Policies, (*at, "unattended_persistent"), "May a persistent field stand with nobody there?", "It decides what can be done at night.", "yes")
+        yield value(
+            Policies,
+            (*at, "unattended_persistent"),
+            "May a persistent field stand with nobody there?",
+            "It decides what can be done at night.",
+            "yes",
+        )

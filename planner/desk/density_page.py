@@ -1,4 +1,4 @@
-"""A sample's density from one trace: by the Hall slope, by the period of oscillations in 1/B, and what they say together.
+"""A sample's density from one trace: by the Hall slope, by the period of oscillations in 1/B, and both together.
 
 Uncertainties are half-widths that cover the truth in 95 of 100 traces (two standard deviations), from the
 scatter of the trace alone: a wrong current or gain is not in them.
@@ -250,8 +250,8 @@ def _disagreement(hall: DensityValue, waves: DensityValue, degeneracy: int) -> l
         return [*words, f"With {states:g} states per level they would agree: {meaning}. The Hall density is taken."]
     if ratio < 1.0:
         words.append(
-            "More carriers in the Hall slope than in the oscillations: a parallel channel or a second subband takes part, "
-            "or the geometry shorts part of the Hall voltage (wide contacts, short bar)."
+            "More carriers in the Hall slope than in the oscillations: a parallel channel or a second subband takes "
+            "part, or the geometry shorts part of the Hall voltage (wide contacts, short bar)."
         )
     else:
         words.append(

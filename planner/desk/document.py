@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import os
 import tomllib
 from collections.abc import Callable
 from dataclasses import dataclass, replace
@@ -118,7 +117,8 @@ class Document:
         """Put a value under a key."""
         if self.get(place) == value and type(self.get(place)) is type(value):
             return
-        self._edit(label or f"set {place.where}", place.role, lambda text: toml_text.set_value(text, place.parts, value))
+        label = label or f"set {place.where}"
+        self._edit(label, place.role, lambda text: toml_text.set_value(text, place.parts, value))
 
     def clear(self, place: Place) -> None:
         """Leave a key out; nothing happens where it is left out already."""
@@ -282,10 +282,3 @@ class Document:
         texts = read_texts(self.week_path)
         self._on_disk = texts
         self.replace_texts(texts, "reload from disk")
-
-
-def describe(path: Path) -> str:
-    """A path as a person would say it: from the home folder on, where it lies in it."""
-    home = os.path.expanduser("~")
-    text = str(path)
-    return f"~{text[len(home) :]}" if text.startswith(home + os.sep) else text

@@ -7,6 +7,7 @@ the look alone: bars have letters and patterns, levels below a line are marked, 
 from __future__ import annotations
 
 import math
+from bisect import bisect_left, bisect_right
 from dataclasses import dataclass
 from datetime import time, timedelta
 from itertools import groupby
@@ -160,13 +161,15 @@ def _ruler(grid: Grid, marked: range) -> list[Row]:
             if 0 <= place < grid.columns:
                 _put(hours, place, f"{hour:02d}" if grid.columns > place + 1 else "", "ruler")
             if hour == 0 and -40 < place < grid.columns:
-                text = f"│{WEEKDAYS[day.weekday()]} {day.day}" if place >= 0 else f" {WEEKDAYS[day.weekday()]} {day.day}"
+                text = (
+                    f"│{WEEKDAYS[day.weekday()]} {day.day}" if place >= 0 else f" {WEEKDAYS[day.weekday()]} {day.day}"
+                )
                 at = max(place, 0)
                 covered = grid.column(grid.clock.second(grid.clock.wall(day + timedelta(days=1), time(0))))
                 if at > ends - 1 and covered - at > len(text) - 1 and at + len(text) <= grid.columns:
                     _put(days, at, text, "day")
                     ends = at + len(text)
-                elif 0 <= place:
+                elif place >= 0:
                     _put(days, at, "│", "day")
         day += timedelta(days=1)
     pointer: list[Cell] = [("▼" if place in marked else "─", "cursor" if place in marked else "rule")
@@ -287,8 +290,6 @@ def _value(lane: CurveLane, grid: Grid, place: int) -> float | None:
 
 
 def _between(lane: CurveLane, begin: float, finish: float) -> tuple[int, int]:
-    from bisect import bisect_left, bisect_right
-
     return (
         bisect_left(lane.points, begin, key=lambda point: point[0]),
         bisect_right(lane.points, finish - 1e-6, key=lambda point: point[0]),
@@ -297,8 +298,6 @@ def _between(lane: CurveLane, begin: float, finish: float) -> tuple[int, int]:
 
 def value_at(lane: CurveLane, second: float) -> float | None:
     """The value at an instant, straight between the points; None outside them."""
-    from bisect import bisect_right
-
     points = lane.points
     if not points or not points[0][0] <= second <= points[-1][0]:
         return None
@@ -312,7 +311,7 @@ def value_at(lane: CurveLane, second: float) -> float | None:
 def _names(lane: CurveLane, rows: int, second: float) -> list[str]:
     """The names at the left of a curve: itself with its value under the cursor, then its lines where they lie."""
     value = value_at(lane, second)
-    said = "" if value is None else {"T": tesla, "K": kelvin}.get(lane.unit, lambda one: f"{one:.0f} %")(value)
+    said = "" if value is None else _value_said(lane.unit, value)
     names = [""] * rows
     names[0] = f"{lane.name} {said}".strip()
     for one in sorted(lane.lines, key=lambda one: -one.value):
@@ -323,3 +322,9 @@ def _names(lane: CurveLane, rows: int, second: float) -> list[str]:
         elif row and len(names[row]) + 3 <= GUTTER - 2 and names[row].startswith(" "):
             names[row] += f" {one.value:.0f}"
     return names
+
+
+def _value_said(unit: str, value: float) -> str:
+    if unit == "T":
+        return tesla(value)
+    return kelvin(value) if unit == "K" else f"{value:.0f} {unit}"

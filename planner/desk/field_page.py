@@ -118,7 +118,7 @@ class FieldPage:
 
 
 def default_fillings(largest_integer: int = LARGEST_INTEGER) -> tuple[Fraction, ...]:
-    """Return the fillings worth a line, most field first: the sequence to 5/11 with its mirror, 4/3 to 8/3, integers."""
+    """Return the fillings worth a line, highest field first: see `planner.physics.fillings.fillings_to_list`."""
     return fillings_to_list(largest_integer)
 
 
@@ -169,8 +169,8 @@ def _words(layer: Layer, limits: _Limits) -> list[str]:
         )
     if limits.rated_T is not None and limits.lambda_T is not None:
         words.append(
-            f"Above {limits.rated_T:g} T only with the coil below the lambda point, to {limits.lambda_T:g} T; no week is "
-            "planned there."
+            f"Above {limits.rated_T:g} T only with the coil below the lambda point, to {limits.lambda_T:g} T; no week "
+            "is planned there."
         )
     words.append(
         "Gaps are orders of magnitude for a GaAs-like layer; the temperature leaves 1 % of the longitudinal resistance."
@@ -265,7 +265,7 @@ class _Reacher:
 
     def _offers(self, nu: float, low_T: float, high_T: float, reach: Reach) -> list[Offer]:
         offers = []
-        nearest, furthest = self._sizes(low_T, high_T)
+        furthest = self._sizes(low_T, high_T)[1]
         beyond = self.limits.lambda_T
         if beyond is not None and reach in (Reach.LAMBDA, Reach.LAMBDA_PROVISIONAL, Reach.PROVISIONAL):
             fits = "" if furthest <= beyond * (1 + _EDGE) else " in part"

@@ -301,7 +301,8 @@ def _default(model: type[Table], key: str, info: FieldInfo) -> str:
 @cache
 def _adapter(model: type[Table], attribute: str) -> TypeAdapter[Any]:
     if issubclass(model, Target) and attribute == "kind":
-        return TypeAdapter(Literal[tuple(TARGET_KINDS)])
+        kinds: Any = Literal[tuple(TARGET_KINDS)]
+        return TypeAdapter(kinds)
     info = model.model_fields[attribute]
     metadata = tuple(info.metadata)
     annotation: Any = Annotated[(info.annotation, *metadata)] if metadata else info.annotation

@@ -27,16 +27,6 @@ class Grid:
     pattern: str = PATTERN
 
 
-@dataclass(frozen=True, slots=True)
-class Asked:
-    """One answer of the grid's form: its field, and what it wants, or nothing if it is usable."""
-
-    key: str
-    label: str
-    help: str
-    problem: str
-
-
 QUESTIONS = {
     "sample": ("sample", "the chip; one of this week's samples"),
     "fillings": ("fillings", "ν as integers, fractions or decimals, such as 1/3, 2/5, 2"),
@@ -56,7 +46,7 @@ def judged(document: Document, grid: Grid) -> dict[str, str]:
     """What is wrong with each answer; empty text where it is usable."""
     samples = [row.get("name") for row in document.data("week").get("samples", []) if isinstance(row, dict)]
     return {
-        "sample": "" if grid.sample in samples else f"expected one of {', '.join(map(str, samples)) or 'no samples yet'}",
+        "sample": "" if grid.sample in samples else f"expected one of {', '.join(map(str, samples))}",
         "fillings": _wrong(grid.fillings, read_filling),
         "temperatures": _wrong(grid.temperatures, read_temperature),
         "duration": _wrong(grid.duration, lambda text: _positive(text), single=True),

@@ -45,13 +45,19 @@ STRAY_LIMITS = (
 )
 
 CAUTIONS = (
-    "A planning aid: it protects neither magnet nor people. The maker's limits, the rig's interlocks, local rules and "
-    "licensed people come first.",
+    (
+        "A planning aid: it protects neither magnet nor people. The maker's limits, the rig's interlocks, local rules "
+        "and licensed people come first."
+    ),
     "Quench: leave, keep clear of the vents, call. Nobody energises the magnet again without the person responsible.",
-    "Oxygen alarm: leave at once, warn others; nobody goes back in until the air is normal and the cause is known. No "
-    "lift together with a dewar.",
-    "People with implants stay outside the 0.5 mT line, on the floors above and below too; iron and gas bottles stay "
-    "away. A persistent field is there with the supply off.",
+    (
+        "Oxygen alarm: leave at once, warn others; nobody goes back in until the air is normal and the cause is known. "
+        "No lift together with a dewar."
+    ),
+    (
+        "People with implants stay outside the 0.5 mT line, on the floors above and below too; iron and gas bottles "
+        "stay away. A persistent field is there with the supply off."
+    ),
 )
 """The cautions of the page: common practice, no source, but for the 0.5 mT line (ICNIRP 2009, from memory)."""
 
@@ -60,7 +66,7 @@ _STEPS = 12
 
 @dataclass(frozen=True, slots=True)
 class SectionRow:
-    """One section of the winding at one field; None where it cannot be said (peak field below 1 T, or beyond critical)."""
+    """One section of the winding at one field; margins are None below 1 T of peak field and beyond critical."""
 
     section: str
     field_T: float
@@ -76,8 +82,8 @@ class SectionRow:
 class MagnetRow:
     """One field: current, fastest ramp and the supply's voltage there, and the section nearest its critical surface.
 
-    ``below_lambda`` marks fields for which the coil must be below the lambda point. Voltages are the supply's while ramping
-    up and down at the rate of the rig's table, None where the table has no rate.
+    ``below_lambda`` marks fields for which the coil must be below the lambda point. Voltages are the supply's while
+    ramping up and down at the rate of the rig's table, None where the table has no rate.
     """
 
     field_T: float
@@ -187,12 +193,9 @@ def magnet_page(rig: Rig) -> MagnetPage:
 def _fields_T(magnet: Magnet) -> list[float]:
     """Fields of the table: even steps, both ends of each ramp row, the rated field and those below the lambda point."""
     rated = float(magnet.rated_field_T)
-    step = (
-        next(size for size in (0.1, 0.2, 0.25, 0.5, 1.0, 2.0, 2.5, 5.0, 10.0) if rated / size <= _STEPS)
-        if (rated <= 120)
-        else rated / _STEPS
-    )
-    fields = {round(step * count, 6) for count in range(1, int(rated / step) + 1)}
+    decade = 10.0 ** np.floor(np.log10(rated / _STEPS))
+    step = float(next(size * decade for size in (1.0, 2.0, 2.5, 5.0, 10.0) if size * decade >= rated / _STEPS * 0.999))
+    fields = {float(f"{step * count:.6g}") for count in range(1, int(rated / step) + 1)}
     fields |= {float(row.to_T) for row in magnet.ramp_table if row.to_T <= rated} | {rated}
     if magnet.lambda_field_T is not None:
         fields |= {float(row.to_T) for row in magnet.lambda_table if row.to_T <= magnet.lambda_field_T}
@@ -202,9 +205,7 @@ def _fields_T(magnet: Magnet) -> list[float]:
 
 def rate_at_T_per_s(magnet: Magnet, field_T: float) -> float | None:
     """Return the fastest ramp just below a field, from the row it lies in; None beyond the tables."""
-    rows = [*magnet.ramp_table, *magnet.lambda_table]
-    if field_T > magnet.rated_field_T:
-        rows = [row for row in magnet.lambda_table]
+    rows = magnet.lambda_table if field_T > magnet.rated_field_T else magnet.ramp_table
     return next((float(row.rate_T_per_s) for row in rows if field_T <= row.to_T * (1 + 1e-12)), None)
 
 
@@ -330,20 +331,20 @@ def _words(rig: Rig, rows: tuple[MagnetRow, ...]) -> list[str]:
     slow = [row for row in rows if row.up_V is not None and row.up_V > limit * (1 + 1e-9)]
     if slow:
         words.append(
-            f"From {slow[0].field_T:g} T the ramp table asks for more than the supply's {limit:g} V: ramps there are slower."
+            f"From {slow[0].field_T:g} T the ramp table asks for more than the supply's {limit:g} V: ramps there are "
+            "slower."
         )
-    for row in rows:
-        if row.fraction is not None and row.fraction > 1:
-            words.append(
-                f"At {row.field_T:g} T the section {row.section} is beyond its critical surface: check the numbers."
-            )
-            break
+    beyond = next((row for row in rows if row.fraction is not None and row.fraction > 1), None)
+    if beyond is not None:
+        words.append(
+            f"At {beyond.field_T:g} T the section {beyond.section} is beyond its critical surface: check its numbers."
+        )
     if rig.magnet.conductor:
         words.append("Critical surfaces are published fits; real wire scatters by 10 % about them.")
     if rig.bath is not None:
         words.append(
-            "A quench boils off at most what its energy evaporates, and no more than the bath holds; part stays in the coil. "
-            "Helium gathers under the ceiling: locally there is less oxygen than the figure says."
+            "A quench boils off at most what its energy evaporates, and no more than the bath holds; part stays in the "
+            "coil. Helium gathers under the ceiling: locally there is less oxygen than the figure says."
         )
         words.append(f"Below {100 * HAZARD_OXYGEN:g} % air is oxygen-deficient: 29 CFR 1910.146(b).")
     if any(row.source == "dipole" for row in _stray(rig.magnet)):

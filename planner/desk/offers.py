@@ -16,8 +16,8 @@ def tidy(value: float, digits: int = 3) -> str:
     """A number to so many significant digits, without a power of ten."""
     if value == 0:
         return "0"
-    places = max(0, digits - 1 - math.floor(math.log10(abs(value))))
-    text = f"{value:.{places}f}"
+    places = digits - 1 - math.floor(math.log10(abs(value)))
+    text = f"{round(value, places):.{max(0, places)}f}"
     return text.rstrip("0").rstrip(".") if "." in text else text
 
 

@@ -151,7 +151,7 @@ def _with_value(text: str, parts: Parts, value: Any) -> str:
         for line in block.lines:
             if (*block.parts, *line.keys)[: len(holder)] == holder and depth < len(holder):
                 return _with_line(text, block, f"{_dotted((*holder[depth:], parts[-1]))} = {written(value)}\n")
-    near = [block for block in scan.inside(holder[:-1])] if len(holder) > 1 else []
+    near = scan.inside(holder[:-1]) if len(holder) > 1 else []
     end = near[-1].end if near else len(text)
     return _joined(text[:end], f"[{_dotted(holder)}]\n{key} = {written(value)}\n", text[end:])
 

@@ -3,22 +3,12 @@
 from __future__ import annotations
 
 import math
-import unicodedata
 
 from planner.clock import WEEKDAYS, Clock
+from planner.runsheet.wording import clean, kelvin
+from planner.runsheet.wording import duration as whole_duration
 
-# Marks that reorder the text around them would let one user's words scramble a whole line.
-_REORDERING = frozenset("\u061c\u200e\u200f\u202a\u202b\u202c\u202d\u202e\u2066\u2067\u2068\u2069")
-
-
-def clean(text: str) -> str:
-    """Text from a user on one line, without control characters, lone surrogates or marks that reorder other text."""
-    kept = (
-        " " if unicodedata.category(sign) in ("Cc", "Zl", "Zp") else sign
-        for sign in text
-        if unicodedata.category(sign) != "Cs" and sign not in _REORDERING
-    )
-    return " ".join("".join(kept).split())
+__all__ = ["clean", "day_time", "duration", "kelvin", "plain_amount", "rounded", "tesla"]
 
 
 def rounded(value: float, digits: int = 4) -> str:
@@ -55,11 +45,6 @@ def plain_amount(value: float, unit: str) -> str:
     return f"{rounded(value)} {unit}"
 
 
-def kelvin(value_K: float) -> str:
-    """A temperature, below 1 K in mK."""
-    return f"{rounded(value_K * 1000)} mK" if value_K < 1 else f"{rounded(value_K)} K"
-
-
 def tesla(field_T: float) -> str:
     """A field to 1 mT, with its sign."""
     return "0 T" if round(field_T, 3) == 0 else f"{field_T:+.3f} T".replace("-", "−")
@@ -69,16 +54,8 @@ def duration(seconds: float) -> str:
     """A length of time: "0.3 s", "45 s", "3 min 20 s", "2 h 05 min", "3 d 4 h"."""
     if 0 < seconds < 10 and seconds != round(seconds):
         return f"{rounded(seconds)} s"
-    whole = round(seconds)
-    minutes, rest = divmod(whole, 60)
-    if minutes < 10:
-        return " ".join([f"{minutes} min"] * bool(minutes) + [f"{rest} s"] * bool(rest or not minutes))
-    hours, minutes = divmod(round(whole / 60), 60)
-    if hours >= 48:
-        return f"{hours // 24} d {hours % 24} h"
-    if not hours:
-        return f"{minutes} min"
-    return f"{hours} h {minutes:02d} min" if minutes else f"{hours} h"
+    hours = round(seconds / 3600)
+    return f"{hours // 24} d {hours % 24} h" if hours >= 48 else whole_duration(seconds)
 
 
 def day_time(clock: Clock, second: float) -> str:

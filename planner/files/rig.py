@@ -77,7 +77,7 @@ class Magnet(Table):
     switch: Switch | None = None
     lambda_field_T: PositiveTesla | None = Field(
         default=None,
-        description="rated field with the coil below the lambda point; no week is planned beyond rated_field",
+        description="rated with the coil below the lambda point; no week is planned beyond rated_field",
     )
     lambda_table: tuple[RampSegment, ...] = Field(default=(), description="ramp_table's rows beyond rated_field")
     lambda_temperature_K: Kelvin | None = Field(default=None, description="of the coil below the lambda point")

@@ -111,8 +111,8 @@ def fit_oscillations(
     if data.field.size < 30:
         raise OutOfRangeError("fewer than 30 points of the trace lie in the range of the oscillations")
     step = float(np.median(np.abs(np.diff(field))))
-    start, damping = _coarse(data, step, expected_T)
-    return _refined(data, step, start, damping, shift_sigma_T)
+    start = _nearby(data, step, _coarse(data, step, expected_T), shift_sigma_T)
+    return _refined(data, step, start, shift_sigma_T)
 
 
 def _range_of(frequency_T: float, data: _Points, step_T: float) -> tuple[float, float, float]:
@@ -123,15 +123,15 @@ def _range_of(frequency_T: float, data: _Points, step_T: float) -> tuple[float, 
     return low, high, frequency_T * (1.0 / low - 1.0 / high) if high > low else 0.0
 
 
-def _coarse(data: _Points, step_T: float, expected_T: float | None) -> tuple[float, float]:
-    """The frequency, and its damping, that explains most of what a smooth background leaves."""
+def _coarse(data: _Points, step_T: float, expected_T: float | None) -> float:
+    """The frequency that explains most of what a smooth background leaves."""
     largest = float(np.abs(data.field).max())
     if expected_T is None:
         # Four cycles must fit below the largest field; and four points into each of them.
         ends = 0.5 * largest, min(largest**2 / (_POINTS_PER_CYCLE * step_T), 60.0 * largest)
     else:
         ends = expected_T / 6.0, expected_T * 4.0
-    best, found, damping = 0.0, 0.0, 0.0
+    best, found = 0.0, 0.0
     for frequency in np.geomspace(*ends, _FREQUENCIES):
         low, high, cycles = _range_of(float(frequency), data, step_T)
         if cycles < FEWEST_CYCLES:
@@ -150,10 +150,38 @@ def _coarse(data: _Points, step_T: float, expected_T: float | None) -> tuple[flo
             # What two columns explain of pure noise falls with the number of points.
             worth = gained * np.sqrt(part.field.size) if gained > 12.0 / part.field.size else 0.0
             if worth > best:
-                best, found, damping = worth, float(frequency), factor * float(frequency)
+                best, found = worth, float(frequency)
     if best == 0.0:
         raise OutOfRangeError(f"no oscillation of at least {FEWEST_CYCLES:g} cycles in 1/B stands out of the scatter")
-    return found, damping
+    return found
+
+
+@dataclass(frozen=True, slots=True)
+class _Start:
+    frequency_T: float
+    damping_T: float
+    shift_T: float
+
+
+def _nearby(data: _Points, step_T: float, frequency_T: float, shift_sigma_T: float) -> _Start:
+    """Frequency, damping and shift near a first guess: over one range of field, so that no cycle is counted wrongly.
+
+    A shifted field moves the phase where the cycles are densest; without it a neighbouring count can look better.
+    """
+    low, high, _ = _range_of(frequency_T, data, step_T)
+    part = data.between(low, high).thinned(_COARSE_POINTS)
+    best, found = np.inf, _Start(frequency_T, 0.2 * frequency_T, 0.0)
+    for shift in shift_sigma_T * np.linspace(-2.0, 2.0, 7):
+        size = np.maximum(np.abs(part.field - shift), 0.2 * low)
+        background = _background(size, high)
+        for factor in np.linspace(0.88, 1.12, 41):
+            for damping in (0.15, 0.4):
+                trial = _Start(float(factor) * frequency_T, damping * frequency_T, float(shift))
+                waves = _waves(size, trial.frequency_T, trial.damping_T, harmonics=1)
+                left = _without(np.column_stack([background, waves]), part.ohm)
+                if float(left @ left) < best:
+                    best, found = float(left @ left), trial
+    return found
 
 
 def _background(size: FloatArray, high_T: float) -> FloatArray:
@@ -175,9 +203,10 @@ def _without(columns: FloatArray, values: FloatArray) -> FloatArray:
     return np.asarray(values - columns @ found)
 
 
-def _refined(data: _Points, step_T: float, start_T: float, damping_T: float, shift_sigma_T: float) -> OscillationFit:
+def _refined(data: _Points, step_T: float, start: _Start, shift_sigma_T: float) -> OscillationFit:
     from scipy.optimize import least_squares
 
+    start_T, damping_T = start.frequency_T, start.damping_T
     low, high, _ = _range_of(start_T, data, step_T)
     part = data.between(low, high)
     ways = [sign for sign in (1, -1) if (part.heading == sign).any()]
@@ -199,7 +228,7 @@ def _refined(data: _Points, step_T: float, start_T: float, damping_T: float, shi
         left = _without(columns(unknown), part.ohm) / noise
         return np.concatenate([left, unknown[2:], [unknown[1] / 3.0]])
 
-    unknown = np.array([1.0, 0.0, *(0.0 for _ in ways)])
+    unknown = np.array([1.0, 0.0, *(start.shift_T / shift_sigma_T for _ in ways)])
     noise = weight
     for _ in range(3):  # the first rounds find how large the scatter is, so that it weighs rightly against the shifts
         found = least_squares(misfit, unknown, x_scale=np.array([1e-3, 0.3, *(1.0 for _ in ways)]), args=(noise,))

@@ -186,7 +186,8 @@ def _least_squares(columns: FloatArray, values: FloatArray) -> tuple[FloatArray,
     """Coefficients, their standard deviations for unit noise, and residuals."""
     found, *_ = np.linalg.lstsq(columns, values, rcond=None)
     inverse = np.linalg.pinv(columns.T @ columns)
-    return found, np.sqrt(np.maximum(np.diag(inverse), 0.0)), values - columns @ found
+    deviations = np.asarray(np.sqrt(np.maximum(np.diag(inverse), 0.0)), dtype=np.float64)
+    return np.asarray(found, dtype=np.float64), deviations, np.asarray(values - columns @ found, dtype=np.float64)
 
 
 def alike(left: FloatArray) -> float:

@@ -1,0 +1,187 @@
+"""The place of the targets: all of them in a table, the form of the one under the cursor below."""
+
+from __future__ import annotations
+
+from rich.text import Text
+from textual import on
+from textual.app import ComposeResult
+from textual.containers import Vertical
+from textual.events import Resize
+from textual.widgets import DataTable
+
+from planner.desk.form import TableForm, TargetRow, target_rows
+from planner.desk.place import Place
+from planner.desk.session import Session
+from planner.screens.field_sheet import FieldSheet
+from planner.screens.looks import message_style
+
+TARGETS = Place("week", ("targets",))
+
+
+class TargetTable(DataTable[Text]):
+    """The targets."""
+
+
+class TargetsPlace(Vertical):
+    """What is to be measured, and the field each target means on this rig today."""
+
+    DEFAULT_CSS = """
+    TargetsPlace TargetTable { height: 2fr; }
+    TargetsPlace FieldSheet { height: 3fr; border-top: tall $panel; }
+    """
+
+    HELP = (
+        "One line a target: what it asks for, and the field that means today, with the interval that the density's error "
+        "leaves. ✗ marks what this rig cannot do, or what is wrong. ! marks a target that must be done.\n\n"
+        "Enter goes to the values of the target, Esc or Tab back. a adds a target, c copies one, d deletes it, ⇧↑ and ⇧↓ "
+        "move it. n turns a list of fillings × temperatures into targets at once."
+    )
+
+    def __init__(self, session: Session, *, id: str | None = None) -> None:
+        super().__init__(id=id)
+        self.session = session
+        self._rows: list[TargetRow] = []
+        self._open: tuple[Place, str] | None = None
+        self._width = 0
+
+    def compose(self) -> ComposeResult:
+        """The table, and the form."""
+        yield TargetTable(cursor_type="row", zebra_stripes=True)
+        yield FieldSheet()
+
+    def on_mount(self) -> None:
+        """Fill the table."""
+        self.refresh_place()
+
+    @property
+    def table(self) -> TargetTable:
+        """The targets."""
+        return self.query_one(TargetTable)
+
+    @property
+    def sheet(self) -> FieldSheet:
+        """The form."""
+        return self.query_one(FieldSheet)
+
+    @property
+    def row(self) -> TargetRow | None:
+        """The target under the cursor."""
+        at = self.table.cursor_row
+        return self._rows[at] if 0 <= at < len(self._rows) else None
+
+    def focus_place(self) -> None:
+        """Take the focus."""
+        self.table.focus()
+
+    def refresh_place(self) -> None:
+        """Show the targets as they stand."""
+        if not self.is_mounted:
+            return
+        table, at = self.table, self.table.cursor_row
+        self._rows = target_rows(self.session)
+        with self.app.batch_update():
+            if self._width != self.size.width:
+                self._columns()
+                table.add_rows(self._cells(row) for row in self._rows)
+            elif table.row_count == len(self._rows):
+                for place, row in enumerate(self._rows):
+                    for column, cell in enumerate(self._cells(row)):
+                        table.update_cell_at((place, column), cell)  # type: ignore[arg-type]
+            else:
+                table.clear()
+                table.add_rows(self._cells(row) for row in self._rows)
+            table.move_cursor(row=max(0, min(at, len(self._rows) - 1)))
+        self._show()
+        self.sheet.refresh_form()
+
+    def open(self, place: Place) -> None:
+        """Put the cursor on a target."""
+        if place.within(TARGETS) and len(place.parts) > 1 and isinstance(place.parts[1], int):
+            self.table.move_cursor(row=place.parts[1])
+            self._show()
+
+    def _columns(self) -> None:
+        self._width = self.size.width
+        self.table.clear(columns=True)
+        whole = max(60, self._width - 18)
+        narrow = {"": 1, "kind": 11, "sample": 8, "stage": 8, "p": 2}
+        left = whole - sum(narrow.values())
+        wide = {"target": left * 36 // 100, "asks": left * 22 // 100, "means on this rig now": left * 42 // 100}
+        for name in ("", "target", "kind", "sample", "asks", "means on this rig now", "stage", "p"):
+            self.table.add_column(Text(name), key=name or "mark", width=(narrow | wide)[name])
+
+    def _cells(self, row: TargetRow) -> list[Text]:
+        theme = self.app.theme
+        wrong = bool(row.problems) or not row.reached
+        bad = message_style(theme, "bad")
+        means = Text("; ".join(row.problems), bad) if row.problems else Text(row.means, bad if wrong else "")
+        mark = Text("✗", bad) if wrong else Text("!" if row.must else " ")
+        return [
+            mark,
+            *(Text(text, overflow="ellipsis", no_wrap=True) for text in (row.name, row.kind, row.sample, row.asks)),
+            means,
+            Text(row.stage, overflow="ellipsis", no_wrap=True),
+            Text(row.priority),
+        ]
+
+    def _show(self) -> None:
+        row = self.row
+        wanted = None if row is None else (row.place, row.kind)
+        if wanted != self._open:
+            self._open = wanted
+            self.sheet.show(None if row is None else TableForm(self.session, row.place))
+
+    @on(DataTable.RowHighlighted, "TargetTable")
+    def _highlighted(self, event: DataTable.RowHighlighted) -> None:
+        event.stop()
+        self._show()
+
+    @on(DataTable.RowSelected, "TargetTable")
+    def _selected(self, event: DataTable.RowSelected) -> None:
+        event.stop()
+        if self.row is not None:
+            self.sheet.lines.focus()
+
+    def on_resize(self, _event: Resize) -> None:
+        """Fit the columns."""
+        self.refresh_place()
+
+    # What keys do here
+
+    def do_add(self) -> None:
+        """Add a target behind the one under the cursor."""
+        row = self.row
+        at = None
+        if row is not None and isinstance(row.place.last, int):
+            at = row.place.last + 1
+        self._made(self.session.add(TARGETS, at))
+
+    def do_copy(self) -> None:
+        """Copy the target under the cursor."""
+        if self.row is not None:
+            self._made(self.session.copy(self.row.place), focus=False)
+
+    def do_delete(self) -> None:
+        """Delete the target under the cursor."""
+        if self.row is not None:
+            self.session.delete(self.row.place)
+            self.post_message(FieldSheet.Committed("", "", usable=True))
+
+    def do_row_up(self) -> None:
+        """Move the target up."""
+        self._move(-1)
+
+    def do_row_down(self) -> None:
+        """Move the target down."""
+        self._move(1)
+
+    def _move(self, by: int) -> None:
+        if self.row is not None:
+            self._made(self.session.move(self.row.place, by), focus=False)
+
+    def _made(self, place: Place, *, focus: bool = True) -> None:
+        self.refresh_place()
+        self.open(place)
+        if focus:
+            self.sheet.lines.focus()
+        self.post_message(FieldSheet.Committed("", "", usable=True))
