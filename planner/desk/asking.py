@@ -10,6 +10,7 @@ from __future__ import annotations
 import copy
 from collections.abc import Callable, Generator, Mapping
 from dataclasses import dataclass, replace
+from itertools import pairwise
 from typing import Any
 
 from planner.desk.fields import Field, FieldKind, fields_of
@@ -319,7 +320,9 @@ class Asking:
             text = question.holds(self._start) or ""
         else:
             found = value_at(self._start, question.parts)
-            text = LEAVE_OUT if found is None and question.optional and self._has_table(question.parts) else shown(found)
+            text = (
+                LEAVE_OUT if found is None and question.optional and self._has_table(question.parts) else shown(found)
+            )
         try:
             value = question.value_of(text) if text else None
         except ValueError:
@@ -359,7 +362,7 @@ def _told(problem: Problem, parts: Parts) -> str:
 def _put(data: dict[str, Any], parts: Parts, put: Any) -> None:
     """Put a value under its place; tables and rows on the way are made, a target of another kind begins anew."""
     table: Any = data
-    for part, following in zip(parts[:-1], parts[1:], strict=True):
+    for part, following in pairwise(parts):
         if isinstance(part, int):
             while len(table) <= part:
                 table.append({})

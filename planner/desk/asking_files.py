@@ -7,6 +7,7 @@ from datetime import date
 from pathlib import Path
 from typing import Any, Literal
 
+from planner.clock import zone
 from planner.desk.asking import Asking
 from planner.desk.asking_rig import rig_script
 from planner.desk.asking_text import amended_text, fresh_text
@@ -36,8 +37,8 @@ class NewFile:
         Where it shall be; a week's rig file lies in the same folder or below.
     start
         An existing file of the same role whose values are the offers.
-    today, zone
-        For a week: what start and time zone to offer.
+    today, zone_offer
+        For a week: the start offered lies after this day; the time zone offered.
     replace
         Whether a file that is there may be replaced.
 
@@ -55,7 +56,7 @@ class NewFile:
         *,
         start: Path | None = None,
         today: date | None = None,
-        zone: str = "Europe/Vienna",
+        zone_offer: str = "Europe/Vienna",
         replace: bool = False,
     ) -> None:
         self.role: Literal["week", "rig"] = role
@@ -72,7 +73,7 @@ class NewFile:
             return
         offer = self._rig_offer(data)
         day = today or date.today()  # noqa: DTZ011 - the day on the wall where the question is asked
-        self.asking = Asking(lambda: week_script(self._rig, offer, day, zone), self._week_problems, data)
+        self.asking = Asking(lambda: week_script(self._rig, offer, day, zone_offer), self._week_problems, data)
 
     def text(self) -> str:
         """The whole file, once everything is answered.
@@ -136,6 +137,15 @@ class NewFile:
             return name
         hint = "make one first: fridgeweek new rig"
         raise InputError([Problem(str(folder), "", "", "there is no rig file that can be used here or below", hint)])
+
+
+def zone_named(name: str, otherwise: str) -> str:
+    """The name itself where it is a time zone's, else another."""
+    try:
+        zone(name)
+    except ValueError:
+        return otherwise
+    return name
 
 
 def _check_place(path: Path, *, replace: bool) -> None:

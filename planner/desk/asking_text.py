@@ -82,7 +82,7 @@ class _Page:
             self._lines.append(f"{name} = {_written(inner)}{mark}")
 
     def _why_of(self, at: Parts) -> str:
-        """The reason of the question for this place; of a list or small table, those of its first row, one after other."""
+        """The reason of the question for this place; of a list or small table, the reasons inside it."""
         if at in self._why:
             return self._why[at]
         inside = [why for parts, why in self._why.items() if parts[: len(at)] == at]
@@ -109,8 +109,8 @@ def _amended(text: str, at: Parts, old: dict[str, Any], new: dict[str, Any]) -> 
         there = old.get(key)
         if isinstance(there, dict) and isinstance(wanted, dict):
             text = _amended(text, (*at, key), there, wanted)
-        elif _rows(there) and _rows(wanted):
-            text = _amended_rows(text, (*at, key), there, wanted)
+        elif _is_rows(there) and _is_rows(wanted):
+            text = _amended_rows(text, (*at, key), there or [], wanted)
         elif isinstance(wanted, dict) and there is None:
             for name, inner in wanted.items():
                 text = toml_text.set_value(text, (*at, key, name), inner)
@@ -119,7 +119,7 @@ def _amended(text: str, at: Parts, old: dict[str, Any], new: dict[str, Any]) -> 
     return text
 
 
-def _rows(value: Any) -> bool:
+def _is_rows(value: Any) -> bool:
     return isinstance(value, list) and bool(value) and all(isinstance(row, dict) for row in value)
 
 

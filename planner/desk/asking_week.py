@@ -1,4 +1,4 @@
-"""What a week file needs, in the order in which a week of fridge time is agreed: when, who, the rig now, chips, targets.
+"""What a week file needs, in the order in which fridge time is agreed on: when, who, the rig now, samples, targets.
 
 Every offer is an invented value of ordinary size that the rig can do.
 """
@@ -139,7 +139,7 @@ def _present(rig: Rig) -> Script:
         yield _needed(value(Present, (*at, "level"), "Level the gauge reads", why, f"{tidy(level)} %"))
     field = yield _needed(value(Present, (*at, "field"), "Field", "The first move starts from it.", "0 T"))
     field_T = number(field, "T")
-    coil = LEFT_OUT
+    coil: Any = LEFT_OUT
     if field_T and rig.magnet.switch is not None:
         coil = yield value(
             Present, (*at, "coil"), "Coil", "Driven by the supply, or persistent with leads down.", "driven"
@@ -167,18 +167,14 @@ def _needed(question: Question) -> Question:
 
 def _helium() -> Script:
     at: Parts = ("helium",)
-    yield value(
-        Helium, (*at, "stock"), "Liquid helium in storage vessels", "A transfer can draw no more.", "100 L"
-    )
+    yield value(Helium, (*at, "stock"), "Liquid helium in storage vessels", "A transfer can draw no more.", "100 L")
     rows = yield count(
         (*at, "deliveries"), "Deliveries this week", "What arrives can be transferred from then on.", 0, 0, 50
     )
     for row in range(rows):
         which = f"Delivery {row + 1} of {rows}"
         yield value(Delivery, (*at, "deliveries", row, "at"), f"{which}: when", "Not before.", "Wed 10:00")
-        yield value(
-            Delivery, (*at, "deliveries", row, "volume"), f"{which}: litres", "In the vessel.", "60 L"
-        )
+        yield value(Delivery, (*at, "deliveries", row, "volume"), f"{which}: litres", "In the vessel.", "60 L")
 
 
 def _users() -> Generator[Question, Any, list[str]]:
@@ -200,7 +196,8 @@ def _samples(users: list[str]) -> Generator[Question, Any, list[dict[str, Any]]]
     rows = yield count(("samples",), "Samples in this load", "They share one field and one temperature.", 1, 1, 50)
     found = []
     for row in range(rows):
-        found.append((yield from _sample(("samples", row), f"Sample {row + 1} of {rows}", row, users)))
+        sample = yield from _sample(("samples", row), f"Sample {row + 1} of {rows}", row, users)
+        found += [sample]
     return found
 
 
@@ -250,7 +247,9 @@ def _gates(at: Parts, which: str) -> Generator[Question, Any, list[dict[str, Any
         low_V = number(gate["lowest"], "V")
         yield from asked("highest", "highest voltage", "Never above.", f"{tidy(max(1.0, low_V + abs(low_V)))} V")
         within = low_V <= 0 <= number(gate["highest"], "V")
-        yield from asked("rest", "voltage at rest", "It stands there while others measure.", "0 V" if within else gate["lowest"])
+        yield from asked(
+            "rest", "voltage at rest", "It stands there while others measure.", "0 V" if within else gate["lowest"]
+        )
         yield from asked("rate", "fastest change", "Leakage and hysteresis set it.", "20 mV/s")
         why = "Fillings then follow the gate; - if not known."
         yield from asked("density_slope", "density per volt", why, "0.4e11 cm^-2/V")
@@ -293,6 +292,4 @@ def _end(rig: Rig) -> Script:
     yield value(WantedEnd, (*at, "temperature"), "Temperature of the stage", why, "base")
     if rig.bath is not None:
         why = "It weighs helium against time where they disagree."
-        yield value(
-            Objective, ("objective", "hours_per_litre"), "Worth of a litre of helium", why, "0.25 h/L"
-        )
+        yield value(Objective, ("objective", "hours_per_litre"), "Worth of a litre of helium", why, "0.25 h/L")

@@ -5,7 +5,7 @@ Helium and nitrogen lie between two bounds: gas that leaves as warm as the metal
 
 from __future__ import annotations
 
-from collections.abc import Collection
+from collections.abc import Collection, Sequence
 from dataclasses import asdict, dataclass
 from datetime import date, datetime, time, timedelta
 from typing import Any
@@ -46,23 +46,23 @@ class Bounds:
 
 @dataclass(frozen=True, slots=True)
 class MetalRow:
-    """One metal: its mass, the heat in it, and what takes that heat out; nitrogen None without precooling."""
+    """One metal: its mass, the heat in it, and what takes that heat out; None for what the rig does not use."""
 
     metal: str
     mass_kg: float
     heat_J: float
     nitrogen: Bounds | None
-    helium: Bounds
+    helium: Bounds | None
 
 
 @dataclass(frozen=True, slots=True)
 class OrderBy:
-    """Days of a cooldown that is to be done by a day."""
+    """Days of a cooldown that is to be done by a day; without helium nothing is delivered or ordered."""
 
     ready: date
     begins: date
-    delivered: date
-    order: date
+    delivered: date | None
+    order: date | None
     lead_days: int
 
 
@@ -117,7 +117,7 @@ def cooldown_page(rig: Rig, by: date | None = None, holidays: Collection[date] =
     precooled = cooldown.precool == "nitrogen"
     wet = rig.bath is not None
     start_K = NITROGEN_BOILING_K if precooled else ROOM_K
-    metals = tuple(_metal(metal, mass, precooled, start_K) for metal, mass in _masses(cooldown) if mass)
+    metals = tuple(_metal(metal, mass, precooled, wet, start_K) for metal, mass in _masses(cooldown) if mass)
     nitrogen = _sum([row.nitrogen for row in metals]).plus(float(cooldown.nitrogen_fill_L)) if precooled else None
     in_bath = _sum([row.helium for row in metals]).plus(float(cooldown.fill_L)) if wet else None
     warm = _sum([_helium(metal, mass, ROOM_K) for metal, mass in _masses(cooldown)]).plus(float(cooldown.fill_L))
@@ -137,7 +137,7 @@ def cooldown_page(rig: Rig, by: date | None = None, holidays: Collection[date] =
         hours=hours,
         helium_after_h=_helium_after_h(cooldown) if wet else None,
         chain=chain,
-        order=None if by is None else _order(by, hours, cooldown.order_lead_days, holidays),
+        order=None if by is None else _order(by, hours, cooldown.order_lead_days, holidays, wet=wet),
         words=tuple(_words(rig, cooldown, by)),
     )
 
@@ -150,18 +150,19 @@ def _masses(cooldown: Cooldown) -> tuple[tuple[str, float], ...]:
     )
 
 
-def _metal(metal: str, mass_kg: float, precooled: bool, start_K: float) -> MetalRow:
+def _metal(metal: str, mass_kg: float, precooled: bool, wet: bool, start_K: float) -> MetalRow:
     nitrogen = None
     if precooled:
         nitrogen = Bounds(mass_kg * nitrogen_full_L_per_kg(metal), mass_kg * nitrogen_latent_L_per_kg(metal))
-    return MetalRow(metal, mass_kg, mass_kg * metal_heat_J_per_kg(metal), nitrogen, _helium(metal, mass_kg, start_K))
+    helium = _helium(metal, mass_kg, start_K) if wet else None
+    return MetalRow(metal, mass_kg, mass_kg * metal_heat_J_per_kg(metal), nitrogen, helium)
 
 
 def _helium(metal: str, mass_kg: float, start_K: float) -> Bounds:
     return Bounds(mass_kg * helium_full_L_per_kg(metal, start_K), mass_kg * helium_latent_L_per_kg(metal, start_K))
 
 
-def _sum(bounds: list[Bounds | None] | list[Bounds]) -> Bounds:
+def _sum(bounds: Sequence[Bounds | None]) -> Bounds:
     known = [each for each in bounds if each is not None]
     return Bounds(sum(each.least_L for each in known), sum(each.most_L for each in known))
 
@@ -176,9 +177,11 @@ def _helium_after_h(cooldown: Cooldown) -> float | None:
     return None
 
 
-def _order(by: date, hours: float, lead_days: int, holidays: Collection[date]) -> OrderBy:
+def _order(by: date, hours: float, lead_days: int, holidays: Collection[date], *, wet: bool) -> OrderBy:
     latest = datetime.combine(by, time()) - timedelta(hours=hours)
     begins = _working_day(latest.date(), 0, holidays)
+    if not wet:
+        return OrderBy(by, begins, None, None, lead_days)
     delivered = _working_day(begins, -1, holidays)
     return OrderBy(by, begins, delivered, _working_day(delivered, -lead_days, holidays), lead_days)
 
@@ -208,9 +211,9 @@ def _words(rig: Rig, cooldown: Cooldown, by: date | None) -> list[str]:
             words.append("The rig file gives no litres to fill: the helium is for cooling alone.")
     words.append("Hours are those of the work itself; nights in which a part waits for people come on top.")
     if by is not None:
+        helium = ", its helium delivered the working day before" if rig.bath is not None else ""
         words.append(
-            "A cooldown begins on a working day with its helium delivered the working day before. Working days are "
-            "Monday to Friday without the holidays given; the order counts from its own day."
+            f"A cooldown begins on a working day{helium}. Working days are Monday to Friday without the holidays given."
         )
     words.append(
         "Before it begins: leak check passed, contacts tested, field zero, reliefs free, oxygen monitor in date."

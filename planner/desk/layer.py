@@ -6,7 +6,8 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 
 from planner.errors import InputError, Problem
-from planner.files.week import Sample
+from planner.files.references import nearest
+from planner.files.week import Sample, Week
 from planner.physics.gating import gate_for_density_V, gated_density_per_m2
 from planner.units import parse_amount
 
@@ -81,6 +82,69 @@ def layer_of_sample(sample: Sample, voltages_V: Mapping[str, float] | None = Non
     )
     density = float(sample.density_per_m2)
     return Layer(sign * density, density * float(sample.density_error_percent) / 100.0, gates)
+
+
+def typed_layer(
+    density_per_m2: float,
+    uncertainty: str | None = None,
+    holes: bool = False,
+    gate_slope_per_m2_V: float | None = None,
+    gate_reference_V: float = 0.0,
+    gate_voltage_V: float | None = None,
+) -> Layer:
+    """Take the layer from numbers as typed: density (positive), uncertainty as text, carriers, one gate.
+
+    A gate without a voltage stands at its reference.
+
+    Raises
+    ------
+    InputError
+        If the uncertainty cannot be read.
+    """
+    gates: tuple[GateLine, ...] = ()
+    if gate_slope_per_m2_V is not None:
+        stands_V = gate_reference_V if gate_voltage_V is None else gate_voltage_V
+        gates = (GateLine("gate", gate_slope_per_m2_V, gate_reference_V, stands_V),)
+    bare = Layer(-density_per_m2 if holes else density_per_m2, 0.0, gates)
+    return with_density(bare, density_per_m2, uncertainty)
+
+
+def sample_named(week: Week, name: str | None) -> Sample:
+    """Return the sample of a week by its name; without one, the only sample.
+
+    Raises
+    ------
+    InputError
+        If there is no such sample, or several and no name.
+    """
+    names = [sample.name for sample in week.samples]
+    if name is None and len(names) == 1:
+        return week.samples[0]
+    found = next((sample for sample in week.samples if sample.name == name), None)
+    if found is None:
+        expected = f"expected a sample of this week: {', '.join(names)}" if names else "this week has no samples"
+        hint = "" if name is None else nearest(name, names)
+        raise InputError([Problem(week.title, "sample", "" if name is None else f'"{name}"', expected, hint)])
+    return found
+
+
+def with_density(layer: Layer, density_per_m2: float | None, uncertainty: str | None) -> Layer:
+    """Return the layer with a density typed or fitted in place of its own, its sign kept, and with an uncertainty.
+
+    Raises
+    ------
+    InputError
+        If the uncertainty cannot be read.
+    """
+    size = abs(layer.density_per_m2) if density_per_m2 is None else density_per_m2
+    if uncertainty is None:
+        spread = layer.uncertainty_per_m2 if density_per_m2 is None else 0.0
+    else:
+        try:
+            spread = uncertainty_of(uncertainty, size)
+        except ValueError as error:
+            raise InputError([Problem("uncertainty", "", f'"{uncertainty}"', str(error))]) from None
+    return Layer(size if layer.density_per_m2 > 0 else -size, spread, layer.gates)
 
 
 def uncertainty_of(text: str, density_per_m2: float) -> float:

@@ -18,7 +18,6 @@ from planner.physics.helium import gas_volume_m3
 from planner.physics.load_line import (
     LOWEST_T,
     Surface,
-    linear_margin_K,
     operating_fraction,
     short_sample_A,
     temperature_margin_K,
@@ -75,12 +74,14 @@ class SectionRow:
     short_sample_A: float
     fraction: float
     margin_K: float | None
-    linear_margin_K: float | None
 
 
 @dataclass(frozen=True, slots=True)
 class MagnetRow:
-    """One field: current, fastest ramp and the supply's voltage there, and the section nearest its critical surface.
+    """One field: current, fastest ramp and the supply's voltage there, largest fraction and smallest margin.
+
+    ``section`` is the one of the largest fraction; the smallest margin may be another's, and is None where that of any
+    section is.
 
     ``below_lambda`` marks fields for which the coil must be below the lambda point. Voltages are the supply's while
     ramping up and down at the rate of the rig's table, None where the table has no rate.
@@ -218,8 +219,7 @@ def _row(magnet: Magnet, field_T: float, sections: list[SectionRow]) -> MagnetRo
         ohm, henry = float(magnet.supply.lead_resistance_ohm), float(magnet.inductance_H)
         up, down = (float(charging_voltage_V(henry, way * slope, ampere, ohm)) for way in (1, -1))
     worst = max(sections, key=lambda row: row.fraction, default=None)
-    tightest = min((row for row in sections if row.margin_K is not None), key=_margin_of, default=None)
-    over = any(row.fraction > 1 for row in sections)
+    margins = [row.margin_K for row in sections if row.margin_K is not None]
     return MagnetRow(
         field_T=field_T,
         current_A=ampere,
@@ -228,13 +228,9 @@ def _row(magnet: Magnet, field_T: float, sections: list[SectionRow]) -> MagnetRo
         up_V=up,
         down_V=down,
         fraction=None if worst is None else worst.fraction,
-        margin_K=None if tightest is None or over else tightest.margin_K,
+        margin_K=min(margins) if margins and len(margins) == len(sections) else None,
         section="" if worst is None else worst.section,
     )
-
-
-def _margin_of(row: SectionRow) -> float:
-    return float("inf") if row.margin_K is None else row.margin_K
 
 
 def _sections_at(magnet: Magnet, field_T: float) -> list[SectionRow]:
@@ -253,12 +249,11 @@ def _section(magnet: Magnet, conductor: Conductor, field_T: float, *, below_lamb
         kelvin = float(magnet.lambda_temperature_K)
     peak = kappa * ampere
     fraction = operating_fraction(ampere, surface, area, kappa, kelvin)
-    margin = linear = None
+    margin = None
     if peak >= LOWEST_T and fraction <= 1.0:
         margin = temperature_margin_K(ampere, surface, area, peak, kelvin)
-        linear = linear_margin_K(ampere, surface, area, peak, kelvin)
     short = short_sample_A(surface, area, kappa, kelvin)
-    return SectionRow(conductor.name, field_T, peak, kelvin, short, fraction, margin, linear)
+    return SectionRow(conductor.name, field_T, peak, kelvin, short, fraction, margin)
 
 
 def _quench(rig: Rig, field_T: float) -> Quench:

@@ -90,6 +90,26 @@ def add_row(text: str, parts: Parts, at: int, row: dict[str, Any]) -> str:
     return _confirmed(text, edited, on_plain)
 
 
+def appended_rows(text: str, parts: Parts, new: list[dict[str, Any]]) -> str:
+    """The text with rows put after the last of the list under ``parts``, all in one go."""
+
+    def on_plain(data: Any) -> None:
+        for part in parts[:-1]:
+            data = data.setdefault(part, {}) if isinstance(data, dict) else data[part]
+        data.setdefault(parts[-1], []).extend(copy.deepcopy(new))
+
+    scan = Scan(text)
+    rows = [block for block in scan.inside(parts) if block.row and len(block.parts) == len(parts) + 1]
+    value = scan.find(parts)
+    if value is None:
+        lines = [[f"{tomlkit.key(name).as_string()} = {written(one)}\n" for name, one in row.items()] for row in new]
+        block = "\n".join(f"[[{_dotted(parts)}]]\n" + "".join(pairs) for pairs in lines)
+        edited = _with_block(text, scan, rows, (*parts, len(rows)), block)
+    else:
+        edited = _with_item(text, value, len(value.items), ", ".join(written(row) for row in new))
+    return _confirmed(text, edited, on_plain)
+
+
 def move_row(text: str, parts: Parts, to: int) -> str:
     """The text with the row under ``parts`` moved to position ``to`` of its list; comments inside it go with it."""
     at = parts[-1]

@@ -66,7 +66,7 @@ def wanted(field: Field) -> str:
         return ("some of " if many else "one of ") + ", ".join(field.choices)
     if field.kind is FieldKind.QUANTITY:
         return f"a number with its unit, such as {examples}"
-    return f"such as {examples}" if examples else "text"
+    return f"such as {examples}" if examples else ""
 
 
 def explain(field: Field, text: str) -> Explained:
@@ -74,7 +74,8 @@ def explain(field: Field, text: str) -> Explained:
     text = text.strip()
     if not text:
         if field.required:
-            return Explained(False, f"needed: {wanted(field)}")
+            told = wanted(field)
+            return Explained(False, f"needed: {told}" if told else "needed")
         return Explained(True, f"left out: {field.default or 'nothing'}")
     try:
         value = _READERS.get(field.kind, _text)(field, text)

@@ -38,10 +38,10 @@ def _texts(value: Any) -> list[str]:
     return [item for item in value if isinstance(item, str)] if isinstance(value, list) else []
 
 
-def reference_problems(data: dict[str, Any], file: str) -> list[Problem]:
-    """Every disagreement between the parts of a week file; of very many the first `MOST_PROBLEMS`."""
+def reference_problems(data: dict[str, Any], file: str, most: int = MOST_PROBLEMS) -> list[Problem]:
+    """Every disagreement between the parts of a week file; of very many the first ``most``."""
     rules = (_twice, _unknown, _gates, _circles, _times)
-    return list(islice((problem for rule in rules for problem in rule(data, file)), MOST_PROBLEMS))
+    return list(islice((problem for rule in rules for problem in rule(data, file)), most))
 
 
 def _twice(data: dict[str, Any], file: str) -> Iterator[Problem]:
@@ -76,11 +76,13 @@ def _unknown(data: dict[str, Any], file: str) -> Iterator[Problem]:
             name = row.get(field)
             if isinstance(name, str) and name not in known:
                 yield Problem(file, f"{key}[{at}].{field}", f'"{name}"', f"expected {what}", nearest(name, list(known)))
+    told = 0
     for at, row in _tables(data, "targets"):
         for field in ("after", "before"):
             for name in _texts(row.get(field)):
                 if name not in targets:
-                    hint = nearest(name, list(targets))
+                    told += 1
+                    hint = nearest(name, list(targets)) if told <= MOST_PROBLEMS else ""
                     yield Problem(file, f"targets[{at}].{field}", f'"{name}"', "expected a target of this file", hint)
 
 

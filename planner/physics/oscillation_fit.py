@@ -11,7 +11,6 @@ filling the oscillations are no sinusoid any more.
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import dataclass
 
 import numpy as np
@@ -34,6 +33,8 @@ _POINTS_PER_CYCLE = 4.0
 _FREQUENCIES = 400
 _COARSE_POINTS = 500
 _BACKGROUND = 4
+_STARTS = 4
+_DAMPING_WEIGHT = 1.0 / 3.0  # a factor of twenty either way: only keeps a damping that nothing shows from running off
 
 
 @dataclass(frozen=True, slots=True)
@@ -111,8 +112,11 @@ def fit_oscillations(
     if data.field.size < 30:
         raise OutOfRangeError("fewer than 30 points of the trace lie in the range of the oscillations")
     step = float(np.median(np.abs(np.diff(field))))
-    start = _nearby(data, step, _coarse(data, step, expected_T), shift_sigma_T)
-    return _refined(data, step, start, shift_sigma_T)
+    guess = _coarse(data, step, expected_T)
+    low, high, _ = _range_of(guess, data, step)
+    part = data.between(low, high)
+    fits = [_refined(part, start, shift_sigma_T) for start in _nearby(data, step, guess, shift_sigma_T)]
+    return min(fits, key=lambda fit: fit[0])[1]
 
 
 def _range_of(frequency_T: float, data: _Points, step_T: float) -> tuple[float, float, float]:
@@ -163,15 +167,15 @@ class _Start:
     shift_T: float
 
 
-def _nearby(data: _Points, step_T: float, frequency_T: float, shift_sigma_T: float) -> _Start:
-    """Frequency, damping and shift near a first guess: over one range of field, so that no cycle is counted wrongly.
+def _nearby(data: _Points, step_T: float, frequency_T: float, shift_sigma_T: float) -> list[_Start]:
+    """Starts near a first guess, best first: over one range of field, so that no cycle is counted wrongly.
 
     A shifted field moves the phase where the cycles are densest; without it a neighbouring count can look better.
     """
     low, high, _ = _range_of(frequency_T, data, step_T)
     part = data.between(low, high).thinned(_COARSE_POINTS)
-    best, found = np.inf, _Start(frequency_T, 0.2 * frequency_T, 0.0)
-    for shift in shift_sigma_T * np.linspace(-2.0, 2.0, 7):
+    trials: dict[float, tuple[float, _Start]] = {}
+    for shift in shift_sigma_T * np.linspace(-2.4, 2.4, 9):
         size = np.maximum(np.abs(part.field - shift), 0.2 * low)
         background = _background(size, high)
         for factor in np.linspace(0.88, 1.12, 41):
@@ -179,9 +183,20 @@ def _nearby(data: _Points, step_T: float, frequency_T: float, shift_sigma_T: flo
                 trial = _Start(float(factor) * frequency_T, damping * frequency_T, float(shift))
                 waves = _waves(size, trial.frequency_T, trial.damping_T, harmonics=1)
                 left = _without(np.column_stack([background, waves]), part.ohm)
-                if float(left @ left) < best:
-                    best, found = float(left @ left), trial
-    return found
+                cost = _cost(left, np.array([shift / shift_sigma_T]))
+                if cost < trials.get(trial.frequency_T, (np.inf, trial))[0]:
+                    trials[trial.frequency_T] = cost, trial
+    costs = [trials[frequency] for frequency in sorted(trials)]
+    dips = [
+        each for at, each in enumerate(costs) if each[0] <= min(other[0] for other in costs[max(0, at - 1) : at + 2])
+    ]
+    return [start for _, start in sorted(dips, key=lambda each: each[0])[:_STARTS]]
+
+
+def _cost(left: FloatArray, shifts_sigma: FloatArray) -> float:
+    """Minus twice the logarithm of the likelihood, but for a constant: scatter unknown, shifts normally distributed."""
+    total = max(float(left @ left), 1e-300)
+    return left.size * float(np.log(total / left.size)) + float(shifts_sigma @ shifts_sigma)
 
 
 def _background(size: FloatArray, high_T: float) -> FloatArray:
@@ -203,71 +218,87 @@ def _without(columns: FloatArray, values: FloatArray) -> FloatArray:
     return np.asarray(values - columns @ found)
 
 
-def _refined(data: _Points, step_T: float, start: _Start, shift_sigma_T: float) -> OscillationFit:
+@dataclass(frozen=True, slots=True)
+class _Model:
+    """The trace as a function of what is not linear in it: F as a share of its start, ln of damping, shifts in σ."""
+
+    part: _Points
+    start: _Start
+    shift_sigma_T: float
+    ways: tuple[int, ...]
+    low_T: float
+    high_T: float
+
+    @classmethod
+    def of(cls, part: _Points, start: _Start, shift_sigma_T: float) -> _Model:
+        ways = tuple(sign for sign in (1, -1) if (part.heading == sign).any())
+        size = np.abs(part.field)
+        return cls(part, start, shift_sigma_T, ways, float(size.min()), float(size.max()))
+
+    def columns(self, unknown: FloatArray) -> FloatArray:
+        """What the trace is a linear sum of."""
+        moved = self.part.field.copy()
+        for sign, shift in zip(self.ways, unknown[2:] * self.shift_sigma_T, strict=True):
+            moved[self.part.heading == sign] -= shift
+        size = np.maximum(np.abs(moved), 0.2 * self.low_T)
+        damping = self.start.damping_T * float(np.exp(unknown[1]))
+        waves = _waves(size, self.start.frequency_T * float(unknown[0]), damping, harmonics=2)
+        return np.column_stack([_background(size, self.high_T), waves])
+
+    def left(self, unknown: FloatArray) -> FloatArray:
+        """What the best sum leaves of the trace."""
+        return _without(self.columns(unknown), self.part.ohm)
+
+    def misfit(self, unknown: FloatArray, noise: float) -> FloatArray:
+        """Residuals in units of the scatter, and the unknowns against what is expected of them beforehand."""
+        return np.concatenate([self.left(unknown) / noise, unknown[2:], [unknown[1] * _DAMPING_WEIGHT]])
+
+
+def _refined(part: _Points, start: _Start, shift_sigma_T: float) -> tuple[float, OscillationFit]:
+    """The fit from one start, with its cost."""
     from scipy.optimize import least_squares
 
-    start_T, damping_T = start.frequency_T, start.damping_T
-    low, high, _ = _range_of(start_T, data, step_T)
-    part = data.between(low, high)
-    ways = [sign for sign in (1, -1) if (part.heading == sign).any()]
-    smooth = _without(_background(np.abs(part.field), high), part.ohm)
-    weight = float(np.sqrt(smooth @ smooth / part.field.size)) or 1.0
-
-    def shifted(shifts: FloatArray) -> FloatArray:
-        moved = part.field.copy()
-        for sign, shift in zip(ways, shifts, strict=True):
-            moved[part.heading == sign] -= shift
-        return np.asarray(np.abs(moved))
-
-    def columns(unknown: FloatArray) -> FloatArray:
-        size = np.maximum(shifted(unknown[2:] * shift_sigma_T), 0.2 * low)
-        waves = _waves(size, start_T * unknown[0], damping_T * np.exp(unknown[1]), harmonics=2)
-        return np.column_stack([_background(size, high), waves])
-
-    def misfit(unknown: FloatArray, noise: float) -> FloatArray:
-        left = _without(columns(unknown), part.ohm) / noise
-        return np.concatenate([left, unknown[2:], [unknown[1] / 3.0]])
-
-    unknown = np.array([1.0, 0.0, *(start.shift_T / shift_sigma_T for _ in ways)])
+    model = _Model.of(part, start, shift_sigma_T)
+    smooth = _without(_background(np.abs(part.field), model.high_T), part.ohm)
+    total = float(smooth @ smooth)
+    weight = float(np.sqrt(total / part.field.size)) or 1.0
+    unknown = np.array([1.0, 0.0, *(start.shift_T / shift_sigma_T for _ in model.ways)])
+    scale = np.array([1e-3, 0.3, *(1.0 for _ in model.ways)])
     noise = weight
     for _ in range(3):  # the first rounds find how large the scatter is, so that it weighs rightly against the shifts
-        found = least_squares(misfit, unknown, x_scale=np.array([1e-3, 0.3, *(1.0 for _ in ways)]), args=(noise,))
-        unknown = found.x
-        left = _without(columns(unknown), part.ohm)
+        unknown = least_squares(model.misfit, unknown, x_scale=scale, args=(noise,)).x
+        left = model.left(unknown)
         freedom = max(1, part.field.size - len(unknown) - _BACKGROUND - 5)
         noise = max(float(np.sqrt(left @ left / freedom)), 1e-9 * weight)
-    sigma = _sigma(columns, part, unknown, noise) * np.sqrt(alike(left)) * start_T
-    total = float(smooth @ smooth)
-    shifts = dict(zip(ways, unknown[2:] * shift_sigma_T, strict=True))
-    frequency = float(start_T * unknown[0])
-    return OscillationFit(
+    shifts = dict(zip(model.ways, unknown[2:] * shift_sigma_T, strict=True))
+    frequency = float(start.frequency_T * unknown[0])
+    fit = OscillationFit(
         frequency_T=frequency,
-        sigma_T=float(sigma),
-        low_T=low,
-        high_T=high,
-        cycles=frequency * (1.0 / low - 1.0 / high),
+        sigma_T=_sigma(model, unknown, noise) * float(np.sqrt(alike(left))) * start.frequency_T,
+        low_T=model.low_T,
+        high_T=model.high_T,
+        cycles=frequency * (1.0 / model.low_T - 1.0 / model.high_T),
         points=int(part.field.size),
-        damping_T=float(damping_T * np.exp(unknown[1])),
+        damping_T=float(start.damping_T * np.exp(unknown[1])),
         shift_up_T=float(shifts[1]) if 1 in shifts else None,
         shift_down_T=float(shifts[-1]) if -1 in shifts else None,
         explained=1.0 - float(left @ left) / total if total else 1.0,
     )
+    return _cost(left, unknown[2:]), fit
 
 
-def _sigma(columns: Callable[[FloatArray], FloatArray], part: _Points, unknown: FloatArray, noise: float) -> float:
+def _sigma(model: _Model, unknown: FloatArray, noise: float) -> float:
     """Standard deviation of the first unknown, all others being fitted."""
-    linear = columns(unknown)
-    found, *_ = np.linalg.lstsq(linear, part.ohm, rcond=None)
-    steps = [1e-7, *(1e-4 for _ in unknown[1:])]
+    linear = model.columns(unknown)
+    found, *_ = np.linalg.lstsq(linear, model.part.ohm, rcond=None)
     slopes = []
-    for at, step in enumerate(steps):
+    for at, step in enumerate([1e-7, *(1e-4 for _ in unknown[1:])]):
         shift = np.zeros_like(unknown)
         shift[at] = step
-        slopes.append((columns(unknown + shift) @ found - columns(unknown - shift) @ found) / (2.0 * step))
+        slopes.append((model.columns(unknown + shift) @ found - model.columns(unknown - shift) @ found) / (2.0 * step))
     whole = np.column_stack([*slopes, linear]) / noise
-    # Rows of what is expected beforehand: shifts of the size given, damping within a factor of twenty.
     prior = np.zeros((len(unknown) - 1, whole.shape[1]))
-    prior[0, 1] = 1.0 / 3.0
+    prior[0, 1] = _DAMPING_WEIGHT
     for at in range(2, len(unknown)):
         prior[at - 1, at] = 1.0
     scale = np.linalg.norm(whole, axis=0)

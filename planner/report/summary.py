@@ -12,7 +12,7 @@ from rich.text import Text
 
 from planner.clock import WEEKDAYS, Clock
 from planner.errors import InputError
-from planner.files import Rig, request_of
+from planner.files import Request, Rig, request_of
 from planner.files.level import level_at
 from planner.plan import HandOrder, LeftOut, Plan, Score, Step, StepKind
 from planner.report.findings import findings_table
@@ -26,16 +26,20 @@ CAUTION = (
 
 def summary(plan: Plan, console: Console) -> None:
     """Print the summary of a plan."""
-    rig = _rig(plan)
+    request = _request(plan)
+    rig = request.rig if request else None
+    letters = {user.name: user.letter for user in request.week.users} if request else {}
     heading = plain(plan.title, "bold")
     heading.append(" · ").append_text(plain(plan.rig, "not bold"))
     console.print(heading)
+    if letters:
+        console.print(Text(" · ").join(plain(f"{letter} {name}") for name, letter in letters.items()))
     if plan.recovery:
         console.print(Text("RECOVERY PLAN: runs down, calls people, transfers helium.", "bold"))
-    _days(plan, rig, console)
+    _days(plan, rig, letters, console)
     console.print()
     _totals(plan, console)
-    _left_out(plan.left_out, console)
+    _left_out(plan.left_out, letters, console)
     _section("Findings", console)
     findings_table(plan.findings, plan.clock, console)
     _compared(plan.compared, console)
@@ -43,10 +47,10 @@ def summary(plan: Plan, console: Console) -> None:
     console.print(Text(CAUTION, "italic"))
 
 
-def _rig(plan: Plan) -> Rig | None:
-    """The rig, for gauge levels; None where the plan carries no readable files (levels are then in litres)."""
+def _request(plan: Plan) -> Request | None:
+    """The week and rig, for letters and gauge levels; None where the plan carries no readable files."""
     try:
-        return request_of(plan.sources).rig
+        return request_of(plan.sources)
     except (InputError, KeyError):
         return None
 
@@ -101,27 +105,27 @@ def stretches(steps: Iterable[Step], clock: Clock) -> list[Stretch]:
     return found
 
 
-def _days(plan: Plan, rig: Rig | None, console: Console) -> None:
+def _days(plan: Plan, rig: Rig | None, letters: dict[str, str], console: Console) -> None:
     clock = plan.clock
     table = Table(box=None, padding=(0, 2, 0, 0), show_edge=False, header_style="bold")
     table.add_column("time", no_wrap=True)
-    table.add_column("what", overflow="fold", ratio=3)
-    table.add_column("user", overflow="fold", ratio=1)
+    table.add_column("what", overflow="fold")
+    table.add_column("user", overflow="fold", max_width=16)
     table.add_column("field / T", justify="right", no_wrap=True)
-    table.add_column("stage", justify="right", overflow="fold")
+    table.add_column("stage", justify="right", no_wrap=True)
     table.add_column("helium", justify="right", no_wrap=True)
     grouped = groupby(stretches(plan.steps, clock), key=lambda stretch: clock.moment(stretch.steps[0].start_s).date())
     for day, found in grouped:
         table.add_row(Text(f"{WEEKDAYS[day.weekday()]} {day.day}", "bold"))
         for stretch in found:
-            table.add_row(*_cells(stretch, clock, rig))
+            table.add_row(*_cells(stretch, clock, rig, letters))
     if table.row_count:
         console.print(table)
     else:
         console.print(Text("No takes and no services."))
 
 
-def _cells(stretch: Stretch, clock: Clock, rig: Rig | None) -> list[Text]:
+def _cells(stretch: Stretch, clock: Clock, rig: Rig | None, letters: dict[str, str]) -> list[Text]:
     first, last = stretch.steps[0], stretch.steps[-1]
     begin, end = clock.moment(first.start_s), clock.moment(last.end_s)
     times = f"{begin:%H:%M}–{end:%H:%M}" + ("+" if end.date() != begin.date() else "")
@@ -134,7 +138,7 @@ def _cells(stretch: Stretch, clock: Clock, rig: Rig | None) -> list[Text]:
     return [
         Text(times),
         what,
-        plain(first.user),
+        plain(letters.get(first.user, first.user)),
         Text(_range(min(fields), max(fields), tesla)),
         Text(_range(min(kelvins), max(kelvins), kelvin)),
         Text(_helium(last, rig)),
@@ -184,18 +188,23 @@ def bound_words(score: Score) -> str:
     return f"{cost}; {bound}: gap {100 * score.gap:.1f} %, not proven best."
 
 
-def _left_out(left_out: tuple[LeftOut, ...], console: Console) -> None:
+def _left_out(left_out: tuple[LeftOut, ...], letters: dict[str, str], console: Console) -> None:
+    """One line a target: how many of its takes are left out, and the nearest miss of the first of them."""
     _section("Left out, and why", console)
     if not left_out:
         console.print(Text("Nothing."))
         return
     table = Table(box=None, padding=(0, 2, 0, 0), show_edge=False, header_style="bold")
     table.add_column("target or take", overflow="fold")
-    table.add_column("user", overflow="fold")
+    table.add_column("user", overflow="fold", max_width=16)
     table.add_column("priority", justify="right")
-    table.add_column("why", overflow="fold")
-    for item in left_out:
-        table.add_row(plain(item.take or item.target), plain(item.user), str(item.priority), plain(item.reason))
+    table.add_column("why (of the first)", overflow="fold")
+    for target, items in groupby(left_out, key=lambda item: item.target):
+        takes = list(items)
+        first = takes[0]
+        name = f"{target} ({len(takes)} takes)" if len(takes) > 1 else first.take or target
+        user = letters.get(first.user, first.user)
+        table.add_row(plain(name), plain(user), str(first.priority), plain(first.reason))
     console.print(table)
 
 

@@ -15,8 +15,8 @@ LISTS = ("week", "rig", "samples", "targets")
 class Action:
     """Something a key does.
 
-    ``keys`` are textual's names, the one that is shown first; ``short`` stands in the line of keys, ``long`` in help and
-    palette; ``where`` are the places in which it can be done. ``weight`` orders the line of keys, 0 is not shown there.
+    ``keys`` are textual's names, the one that is shown first; ``short`` stands in the line of keys, ``long`` in help
+    and palette; ``where`` are the places in which it can be done. ``weight`` orders the line of keys, 0 is not shown.
     """
 
     name: str
@@ -25,17 +25,19 @@ class Action:
     long: str
     where: tuple[str, ...] = ANYWHERE
     weight: int = 0
+    label: str = ""
 
     @property
     def key(self) -> str:
-        """The key as it is shown."""
-        return shown_key(self.keys[0]) if self.keys else ""
+        """The key as the line of keys shows it; ``label`` where one word stands for two keys."""
+        return self.label or (shown_key(self.keys[0]) if self.keys else "")
 
 
 def shown_key(key: str) -> str:
     """A key as people write it."""
     names = {"question_mark": "?", "plus": "+", "minus": "−", "enter": "Enter", "delete": "Del", "left": "←",
-             "right": "→", "up": "↑", "down": "↓", "home": "Home", "end": "End", "space": "Space"}  # fmt: skip
+             "right": "→", "up": "↑", "down": "↓", "home": "Home", "end": "End", "space": "Space", "pageup": "PgUp",
+             "pagedown": "PgDn", "equals_sign": "="}  # fmt: skip
     *held, last = key.split("+")
     text = names.get(last, last.upper() if last.startswith("f") and last[1:].isdigit() else last)
     return "".join({"ctrl": "^", "shift": "⇧"}.get(one, f"{one}+") for one in held) + text
@@ -49,18 +51,21 @@ ACTIONS: dict[str, Action] = {
         Action("delete", ("d", "delete"), "delete", "Delete this row or optional table", LISTS, 8),
         Action("many", ("n",), "many", "Turn fillings × temperatures into targets at once", ("samples", "targets"), 9),
         Action("row_up", ("shift+up",), "up", "Move this row up", LISTS),
-        Action("row_down", ("shift+down",), "move", "Move this row down", LISTS, 3),
-        Action("step_before", ("left",), "step", "The step before", ("plan",), 9),
-        Action("step_after", ("right",), "step", "The step after", ("plan",), 9),
+        Action("row_down", ("shift+down",), "move", "Move this row down", LISTS, 3, "⇧↑↓"),
+        Action("step_before", ("left",), "", "The step before", ("plan",)),
+        Action("step_after", ("right",), "step", "The step after", ("plan",), 9, "←→"),
         Action("take_before", ("up",), "", "The take or service before", ("plan",)),
-        Action("take_after", ("down",), "take", "The take or service after", ("plan",), 8),
+        Action("take_after", ("down",), "take", "The take or service after", ("plan",), 8, "↑↓"),
         Action("first", ("home",), "", "The first step", ("plan",)),
         Action("last", ("end",), "", "The last step", ("plan",)),
-        Action("nearer", ("plus", "equals_sign"), "nearer", "Show a shorter time, finer", ("plan",), 7),
-        Action("wider", ("minus",), "wider", "Show a longer time", ("plan",), 7),
+        Action("nearer", ("plus", "equals_sign"), "zoom", "Show a shorter time, finer", ("plan",), 7, "+−"),
+        Action("wider", ("minus",), "", "Show a longer time", ("plan",)),
         Action("whole", ("0",), "", "Show the whole week", ("plan",)),
         Action("next_finding", ("f",), "finding", "The next step with a finding", ("plan",), 6),
         Action("to_target", ("g", "enter"), "target", "Go to the target of this step", ("plan",), 5),
+        Action("panel_up", ("pageup",), "", "Read the panel upwards", ("plan", "findings", "sheet")),
+        Action("panel_down", ("pagedown",), "panel", "Read the panel downwards", ("plan", "findings", "sheet"), 2,
+               "PgUp/Dn"),
         Action("jump", ("enter",), "to its step", "Go to the step, or the target, that a finding is about",
                ("findings",), 9),
         Action("write", ("w",), "write", "Write the sheet", ("sheet",), 9),

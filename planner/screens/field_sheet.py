@@ -85,16 +85,16 @@ class FieldSheet(Vertical):
     FieldSheet .entry { height: 1; display: none; background: $panel; }
     FieldSheet.typing .entry { display: block; }
     FieldSheet .entry Label { width: auto; padding: 0 1 0 1; text-style: bold; }
-    FieldSheet Entry { width: 1fr; border: none; height: 1; padding: 0; background: $panel; }
+    FieldSheet Entry { width: 1fr; height: 1; padding: 0; background: $panel; }
     FieldSheet .told { height: 2; color: $foreground; padding: 0 1; }
     """
 
     HELP = (
-        "Each line is one value of the file. The middle column is what stands there; in brackets, what holds where it is "
-        "left out. At the right stands what it means on this rig, or what is wrong.\n\n"
-        "Enter: type into the line. Enter again takes it; Tab takes it and goes on to the next; Esc leaves it as it was. "
-        "Quantities have their unit: 12 T, 0.3 T/min, 42 mK, 90 min, 1.1e11 cm^-2. Fillings are integers, fractions or "
-        "decimals: 2, 1/3, 2.5.\n"
+        "Each line is one value of the file. The middle column is what stands there; in brackets, what holds "
+        "where it is left out. At the right stands what it means on this rig, or what is wrong.\n\n"
+        "Enter: type into the line. Enter again takes it; Tab takes it and goes on to the next; Esc leaves it as "
+        "it was. Quantities have their unit: 12 T, 0.3 T/min, 42 mK, 90 min, 1.1e11 cm^-2. Fillings are "
+        "integers, fractions or decimals: 2, 1/3, 2.5.\n"
         "Space: the next choice. Backspace: empty the line, which leaves the key out of the file.\n"
         "While typing, ↑ and ↓ go through the choices."
     )
@@ -108,9 +108,10 @@ class FieldSheet(Vertical):
             self.usable = usable
             super().__init__()
 
-    def __init__(self, form: Form | None = None, *, id: str | None = None) -> None:
-        super().__init__(id=id)
+    def __init__(self, form: Form | None = None) -> None:
+        super().__init__()
         self.form = form
+        self._about = ""
         self._rows: Sequence[FormRow] = ()
         self._typed: FormRow | None = None
         self._shape: tuple[object, ...] = ()
@@ -120,7 +121,7 @@ class FieldSheet(Vertical):
         yield Lines(cursor_type="row", show_header=False, zebra_stripes=False)
         with Horizontal(classes="entry"):
             yield Label("")
-            yield Entry(select_on_focus=False)
+            yield Entry(select_on_focus=True, compact=True)
         yield Static(classes="told", markup=False)
 
     def on_mount(self) -> None:
@@ -144,11 +145,19 @@ class FieldSheet(Vertical):
         at = self.lines.cursor_row
         return self._rows[at] if 0 <= at < len(self._rows) else None
 
-    def show(self, form: Form | None) -> None:
-        """Show another form."""
+    def show(self, form: Form | None, about: str = "") -> None:
+        """Show another form; where there is none, what is to be said instead."""
         self._close()
         self.form = form
+        self._about = about
         self.refresh_form(start=True)
+
+    def to_first_problem(self) -> None:
+        """Put the cursor on the first line with which something is wrong."""
+        for at, row in enumerate(self._rows):
+            if row.problem:
+                self.lines.move_cursor(row=at)
+                return
 
     def refresh_form(self, *, start: bool = False) -> None:
         """Show the form as it stands now; the cursor stays on its line."""
@@ -175,19 +184,24 @@ class FieldSheet(Vertical):
         self._tell()
 
     def _widths(self) -> tuple[int, int, int]:
-        whole = max(40, self.size.width - 6)
-        label = min(24, max(14, max((len(row.label) for row in self._rows), default=14)), whole // 3)
-        value = max(14, (whole - label) * 9 // 20)
-        return label, value, max(10, whole - label - value)
+        """Label, value, meaning: what they need, and where that is too much, a fair share."""
+        whole = max(40, self.size.width - 7)
+        label = min(24, max((len(row.label) for row in self._rows), default=12) + 1, whole * 2 // 5)
+        left = whole - label
+        needs = max((len(row.shown) for row in self._rows), default=0) + 1
+        says = max((len(row.problem or row.means) for row in self._rows), default=0) + 2
+        value = max(min(needs, left - says), min(needs, left // 2), 10)
+        return label, value, max(8, left - value)
 
     def _cells(self, row: FormRow) -> tuple[Text, Text, Text]:
         theme = self.app.theme
         label = Text(row.label, message_style(theme, "strong" if row.act else ""))
         value = Text(row.shown, message_style(theme, "quiet" if row.shown.startswith("(") and not row.text else ""))
-        if row.problem:
-            return label, value, Text(f"✗ {row.problem}", message_style(theme, "bad"))
-        kind = "bad" if row.means.startswith("✗") else "good"
-        return label, value, Text(row.means, message_style(theme, kind))
+        kind = "bad" if row.problem or row.means.startswith("✗") else "good"
+        means = Text(f"✗ {row.problem}" if row.problem else row.means, message_style(theme, kind))
+        for text, width in zip((label, value, means), self._widths(), strict=True):
+            text.truncate(width, overflow="ellipsis")
+        return label, value, means
 
     def _tell(self) -> None:
         """Below the lines: what the one under the cursor is for, and what is wrong or wanted."""
@@ -195,9 +209,14 @@ class FieldSheet(Vertical):
         told = self.query_one(".told", Static)
         theme = self.app.theme
         if row is None:
-            told.update("")
+            told.update(self._about)
             return
-        first = Text(f"{row.label}: {row.help}" if row.help else row.label, message_style(theme, "quiet"), no_wrap=True)
+        first = Text(
+            f"{row.label}: {row.help}" if row.help else row.label,
+            message_style(theme, "quiet"),
+            no_wrap=True,
+            overflow="ellipsis",
+        )
         if row.problem or row.means.startswith("✗"):
             second = Text(row.problem or row.means[2:], message_style(theme, "bad"))
         else:
@@ -221,7 +240,6 @@ class FieldSheet(Vertical):
         self.query_one(".entry Label", Label).update(Text(row.label))
         entry.choices = row.choices
         entry.value = row.text
-        entry.cursor_position = len(row.text)
         self.add_class("typing")
         entry.focus()
         self._explain(row.text)
@@ -232,7 +250,7 @@ class FieldSheet(Vertical):
         found = self.form.explain(self._typed.key, text)
         theme = self.app.theme
         choices = self._typed.choices
-        first = Text(f"{self._typed.help}" if self._typed.help else "", message_style(theme, "quiet"), no_wrap=True)
+        first = Text(self._typed.help, message_style(theme, "quiet"), no_wrap=True, overflow="ellipsis")
         wanted = f"↑↓ {', '.join(choices)}" if choices else self._typed.wanted
         if found.usable:
             second = Text("✓ ", message_style(theme, "good")).append(found.message, message_style(theme, "good"))
@@ -333,4 +351,3 @@ class FieldSheet(Vertical):
     def on_resize(self, _event: Resize) -> None:
         """Fit the columns."""
         self.refresh_form()
-

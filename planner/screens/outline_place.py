@@ -32,22 +32,23 @@ class OutlinePlace(Horizontal):
     """
 
     HELP = (
-        "At the left are the tables of the file, at the right the values of the table under the cursor. Tab goes from one "
-        "side to the other; Enter in the outline goes to the values. A number behind a line counts what is wrong there.\n\n"
-        "a adds a row to a list, or puts in an optional table that says (none); c copies a row; d deletes it; "
-        "⇧↑ and ⇧↓ move it. Everything can be undone with u."
+        "At the left are the tables of the file, at the right the values of the table under the cursor. Tab goes "
+        "from one side to the other; Enter in the outline goes to the values. A number behind a line counts what "
+        "is wrong there.\n\n"
+        "a adds a row to a list, or puts in an optional table that says (none); c copies a row; d deletes it; ⇧↑ "
+        "and ⇧↓ move it. Everything can be undone with u."
     )
 
     def __init__(
-        self, session: Session, role: Role, *, only: str = "", without: tuple[str, ...] = (), id: str | None = None
+        self, session: Session, role: Role, name: str, *, only: str = "", without: tuple[str, ...] = ()
     ) -> None:
-        super().__init__(id=id)
+        super().__init__(id=name)
         self.session = session
         self._role: Role = role
         self._only = only
         self._without = without
-        self._nodes: tuple[Node, ...] = ()
-        self._open: Place | None = None
+        self._outlined: tuple[Node, ...] = ()
+        self._opened: Place | None = None
 
     def compose(self) -> ComposeResult:
         """The outline, and the form."""
@@ -73,11 +74,14 @@ class OutlinePlace(Horizontal):
     def node(self) -> Node | None:
         """The line under the cursor."""
         at = self.tree_table.cursor_row
-        return self._nodes[at] if 0 <= at < len(self._nodes) else None
+        return self._outlined[at] if 0 <= at < len(self._outlined) else None
 
     def focus_place(self) -> None:
-        """Take the focus."""
+        """Take the focus; a list of its own begins at its first row."""
         self.tree_table.focus()
+        if self._only and self.tree_table.cursor_row <= 0 and len(self._outlined) > 1:
+            self.tree_table.move_cursor(row=1)
+            self._show()
 
     def refresh_place(self) -> None:
         """Show the file as it stands; the cursor stays where it was."""
@@ -85,16 +89,16 @@ class OutlinePlace(Horizontal):
             return
         was = self.node
         at = self.tree_table.cursor_row
-        self._nodes = outline(self.session.document, self._role, self._only, self._without)
+        self._outlined = outline(self.session.document, self._role, self._only, self._without)
         table = self.tree_table
         with self.app.batch_update():
-            if table.row_count == len(self._nodes):
-                for place, node in enumerate(self._nodes):
+            if table.row_count == len(self._outlined):
+                for place, node in enumerate(self._outlined):
                     table.update_cell_at((place, 0), self._title(node))  # type: ignore[arg-type]
             else:
                 table.clear()
-                table.add_rows([self._title(node)] for node in self._nodes)
-            places = [node.place for node in self._nodes]
+                table.add_rows([self._title(node)] for node in self._outlined)
+            places = [node.place for node in self._outlined]
             row = places.index(was.place) if was is not None and was.place in places else min(at, len(places) - 1)
             table.move_cursor(row=max(0, row))
         self._show()
@@ -102,14 +106,16 @@ class OutlinePlace(Horizontal):
 
     def open(self, place: Place) -> None:
         """Put the cursor on a table."""
-        for at, node in enumerate(self._nodes):
+        for at, node in enumerate(self._outlined):
             if node.place == place:
                 self.tree_table.move_cursor(row=at)
                 self._show()
 
     def _title(self, node: Node) -> Text:
         theme = self.app.theme
-        text = Text("  " * node.depth + node.title, message_style(theme, "quiet" if node.kind is NodeKind.ABSENT else ""))
+        text = Text(
+            "  " * node.depth + node.title, message_style(theme, "quiet" if node.kind is NodeKind.ABSENT else "")
+        )
         if node.problems:
             text.truncate(WIDTH - 8, overflow="ellipsis")
             text.append(f" ✗{node.problems}", message_style(theme, "bad"))
@@ -120,9 +126,9 @@ class OutlinePlace(Horizontal):
     def _show(self) -> None:
         node = self.node
         place = None if node is None or node.kind in (NodeKind.ROWS, NodeKind.ABSENT) else node.place
-        if place != self._open:
-            self._open = place
-            self.sheet.show(None if place is None else TableForm(self.session, place))
+        if place != self._opened or place is None:
+            self._opened = place
+            self.sheet.show(None if place is None else TableForm(self.session, place), _about(node))
 
     @on(DataTable.RowHighlighted, "Outline")
     def _highlighted(self, event: DataTable.RowHighlighted) -> None:
@@ -132,10 +138,10 @@ class OutlinePlace(Horizontal):
     @on(DataTable.RowSelected, "Outline")
     def _selected(self, event: DataTable.RowSelected) -> None:
         event.stop()
-        if self._open is not None:
+        if self._opened is not None:
             self.sheet.lines.focus()
         else:
-            self.do_add()
+            self.app.run_named("add")  # type: ignore[attr-defined]
 
     # What keys do here
 
@@ -188,4 +194,14 @@ class OutlinePlace(Horizontal):
         self.open(place)
         if focus:
             self.sheet.lines.focus()
+            self.sheet.to_first_problem()
         self.post_message(FieldSheet.Committed("", "", usable=True))
+
+
+def _about(node: Node | None) -> str:
+    """What a line without values is for, and how to fill it."""
+    if node is None or node.kind not in (NodeKind.ABSENT, NodeKind.ROWS):
+        return ""
+    name = str(node.place.last).replace("_", " ")
+    does = "puts this table in" if node.kind is NodeKind.ABSENT else "adds a row"
+    return f"{name}: {node.help}. Enter or a {does}."

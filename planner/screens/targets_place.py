@@ -31,22 +31,24 @@ class TargetsPlace(Vertical):
     """
 
     HELP = (
-        "One line a target: what it asks for, and the field that means today, with the interval that the density's error "
-        "leaves. ✗ marks what this rig cannot do, or what is wrong. ! marks a target that must be done.\n\n"
-        "Enter goes to the values of the target, Esc or Tab back. a adds a target, c copies one, d deletes it, ⇧↑ and ⇧↓ "
-        "move it. n turns a list of fillings × temperatures into targets at once."
+        "One line a target: what it asks for, and the field that means today, with the interval that the "
+        "density's error leaves. ✗ marks what this rig cannot do, or what is wrong. ! marks a target that must "
+        "be done.\n\n"
+        "Enter goes to the values of the target, Esc or Tab back. a adds a target, c copies one, d deletes it, "
+        "⇧↑ and ⇧↓ move it. n turns a list of fillings × temperatures into targets at once."
     )
 
-    def __init__(self, session: Session, *, id: str | None = None) -> None:
-        super().__init__(id=id)
+    def __init__(self, session: Session, name: str) -> None:
+        super().__init__(id=name)
         self.session = session
         self._rows: list[TargetRow] = []
-        self._open: tuple[Place, str] | None = None
-        self._width = 0
+        self._opened: tuple[Place, str] | None = None
+        self._width = -1
+        self._widths: dict[str, int] = {}
 
     def compose(self) -> ComposeResult:
         """The table, and the form."""
-        yield TargetTable(cursor_type="row", zebra_stripes=True)
+        yield TargetTable(cursor_type="row", cell_padding=0)
         yield FieldSheet()
 
     def on_mount(self) -> None:
@@ -101,34 +103,43 @@ class TargetsPlace(Vertical):
             self._show()
 
     def _columns(self) -> None:
+        """Columns that share the width; the kind stands in the form as well and is left out where room is short."""
         self._width = self.size.width
         self.table.clear(columns=True)
-        whole = max(60, self._width - 18)
-        narrow = {"": 1, "kind": 11, "sample": 8, "stage": 8, "p": 2}
+        whole = max(60, self._width - 1)
+        narrow = {"": 2, "kind": 13, "sample": 8, "stage": 9, "p": 2}
+        if whole < 100:
+            del narrow["kind"]
         left = whole - sum(narrow.values())
-        wide = {"target": left * 36 // 100, "asks": left * 22 // 100, "means on this rig now": left * 42 // 100}
-        for name in ("", "target", "kind", "sample", "asks", "means on this rig now", "stage", "p"):
-            self.table.add_column(Text(name), key=name or "mark", width=(narrow | wide)[name])
+        wide = {"target": left * 2 // 5, "asks": left // 5, "means on this rig now": left - left * 2 // 5 - left // 5}
+        names = ("", "target", "kind", "sample", "asks", "means on this rig now", "stage", "p")
+        self._widths = {name: (narrow | wide)[name] for name in names if name in narrow | wide}
+        for name, width in self._widths.items():
+            self.table.add_column(Text(name), key=name or "mark", width=width)
 
     def _cells(self, row: TargetRow) -> list[Text]:
         theme = self.app.theme
         wrong = bool(row.problems) or not row.reached
         bad = message_style(theme, "bad")
-        means = Text("; ".join(row.problems), bad) if row.problems else Text(row.means, bad if wrong else "")
-        mark = Text("✗", bad) if wrong else Text("!" if row.must else " ")
-        return [
-            mark,
-            *(Text(text, overflow="ellipsis", no_wrap=True) for text in (row.name, row.kind, row.sample, row.asks)),
-            means,
-            Text(row.stage, overflow="ellipsis", no_wrap=True),
-            Text(row.priority),
-        ]
+        cells = {
+            "": Text("✗", bad) if wrong else Text("!" if row.must else " "),
+            "target": Text(row.name),
+            "kind": Text(row.kind),
+            "sample": Text(row.sample),
+            "asks": Text(row.asks),
+            "means on this rig now": Text("; ".join(row.problems) or row.means, bad if wrong else ""),
+            "stage": Text(row.stage),
+            "p": Text(row.priority),
+        }
+        for name, width in self._widths.items():
+            cells[name].truncate(width - 1, overflow="ellipsis")
+        return [cells[name] for name in self._widths]
 
     def _show(self) -> None:
         row = self.row
         wanted = None if row is None else (row.place, row.kind)
-        if wanted != self._open:
-            self._open = wanted
+        if wanted != self._opened:
+            self._opened = wanted
             self.sheet.show(None if row is None else TableForm(self.session, row.place))
 
     @on(DataTable.RowHighlighted, "TargetTable")
@@ -184,4 +195,5 @@ class TargetsPlace(Vertical):
         self.open(place)
         if focus:
             self.sheet.lines.focus()
+            self.sheet.to_first_problem()
         self.post_message(FieldSheet.Committed("", "", usable=True))

@@ -29,15 +29,15 @@ def test_what_is_done_when_totals_and_reasons() -> None:
     told = squeezed(printed(small_plan()))
     for part in (
         "Three groups, one magnet · Wet dilution rig",
-        "Mon 3 08:30–09:10 Contacts and gate leakage (attended) Hall group 0 15 mK 92 %",
-        "11:26–13:17 Survey Hall group +4.500 … +11.500 15 mK 84 %",
-        "17:23–03:23+ Quiet night Noise group +3.200 15 mK 83 %",
+        "Mon 3 08:30–09:10 Contacts and gate leakage (attended) A 0 15 mK 92 %",
+        "11:26–13:17 Survey A +4.500 … +11.500 15 mK 84 %",
+        "17:23–03:23+ Quiet night B +3.200 15 mK 83 %",
         "09:27–10:06 helium transfer (attended)",
         "10:00–10:20 look, then decide: Low-field Hall (attended)",
         "10 takes, 96 of at most 104 points",
         "2 transfers pour 40.7 L",
         "gap 7.0 %, not proven best",
-        "Fan between 2 and 1 · 6 Hall group 2 no time left before the end",
+        "Fan between 2 and 1 · 6 A 2 no time left before the end",
         "warn Fri 02:30 3 helium line: Survey: the gauge comes near the line (value 45.1 %",
         "as listed 20 14.3 h, 95.6 L 5.3 h, 81.6 L 9.0 h, 14.0 L",
         "sorted by field 22 8.3 h, 85.6 L 5.3 h, 81.6 L 3.0 h, 4.0 L",
@@ -120,7 +120,7 @@ def test_levels_are_litres_where_the_plan_carries_no_rig() -> None:
 
 def test_a_dry_rig_has_no_level() -> None:
     told = printed(dry_plan())
-    assert "09:26–17:32 Survey (2 takes) Hall group −2.000 … +8.500 1.5 … 4.2 K" in map(squeezed, told.splitlines())
+    assert "09:26–17:32 Survey (2 takes) A −2.000 … +8.500 1.5 … 4.2 K" in map(squeezed, told.splitlines())
     assert "helium 0" not in told
 
 

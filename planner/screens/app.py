@@ -1,0 +1,430 @@
+"""The program on the screen. Nothing is decided here: every key ends in a call of the session."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from pathlib import Path
+from typing import Any, ClassVar
+
+from textual import on, work
+from textual.app import App, ComposeResult, SystemCommand
+from textual.binding import Binding
+from textual.containers import VerticalScroll
+from textual.events import DescendantFocus
+from textual.message import Message
+from textual.screen import Screen
+from textual.widget import Widget
+from textual.widgets import ContentSwitcher
+
+from planner.desk.document import ChangedOnDiskError, Document
+from planner.desk.place import Place
+from planner.desk.session import Session
+from planner.desk.solving import Snapshot, SolveState
+from planner.errors import PlannerError, Problem
+from planner.screens.actions import ACTIONS, TITLES, here, shown_key
+from planner.screens.dialogs import AskScreen, GridScreen, HelpScreen, PathScreen
+from planner.screens.field_sheet import Entry, FieldSheet, Lines
+from planner.screens.findings_place import FindingsPlace
+from planner.screens.lines import KeysLine, PlacesLine, SolveLine, TopLine
+from planner.screens.looks import LOOKS, next_look
+from planner.screens.outline_place import OutlinePlace
+from planner.screens.plan_place import PlanPlace
+from planner.screens.sheet_place import SheetPlace
+from planner.screens.targets_place import TargetsPlace
+
+PlaceWidget = OutlinePlace | TargetsPlace | PlanPlace | FindingsPlace | SheetPlace
+
+
+class SolveChanged(Message):
+    """A solve has something to say; posted from its thread."""
+
+
+class FridgeweekApp(App[None]):
+    """A week of fridge time: its files, its plan, its sheet."""
+
+    TITLE = "fridgeweek"
+    ENABLE_COMMAND_PALETTE = True
+    CSS = """
+    Screen { background: $background; color: $foreground; layers: base; }
+    ContentSwitcher { height: 1fr; }
+    DataTable { background: $background; scrollbar-size: 1 1; overflow-x: hidden; }
+    VerticalScroll { scrollbar-size: 1 1; }
+    DataTable > .datatable--header { background: $surface; color: $foreground; }
+    DataTable > .datatable--cursor { background: $panel; color: $foreground; text-style: none; }
+    DataTable:focus > .datatable--cursor { background: $primary 40%; color: $foreground; text-style: bold; }
+    """
+    BINDINGS: ClassVar[list[Any]] = [
+        Binding(",".join(action.keys), f"do('{action.name}')", action.short or action.long, show=False)
+        for action in ACTIONS.values()
+        if action.keys
+    ] + [Binding("escape", "back_to_list", "back", show=False)]
+
+    def __init__(self, session: Session) -> None:
+        super().__init__()
+        self.session = session
+        self.place = "targets"
+        self._ticking: Any = None
+        for theme in LOOKS.values():
+            self.register_theme(theme)
+        look = session.remembered.look()
+        self.theme = look if look in LOOKS else next(iter(LOOKS))
+
+    def compose(self) -> ComposeResult:
+        """The lines at the edges, and the places between them."""
+        yield TopLine(markup=False)
+        yield PlacesLine(markup=False)
+        yield from self._compose_places()
+        yield SolveLine(markup=False)
+        yield KeysLine(markup=False)
+
+    def _compose_places(self) -> ComposeResult:
+        session = self.session
+        with ContentSwitcher(initial=self.place):
+            yield OutlinePlace(session, "week", "week", without=("samples",))
+            yield OutlinePlace(session, "rig", "rig")
+            yield OutlinePlace(session, "week", "samples", only="samples")
+            yield TargetsPlace(session, "targets")
+            yield PlanPlace(session, "plan")
+            yield FindingsPlace(session, "findings")
+            yield SheetPlace(session, "sheet")
+
+    def on_mount(self) -> None:
+        """Show everything; offer unsaved work of an earlier sitting."""
+        self.call_after_refresh(self._begin)
+
+    def _begin(self) -> None:
+        self.go(self.place)
+        self._offer_draft()
+
+    # Places
+
+    @property
+    def here(self) -> PlaceWidget:
+        """The place one is in."""
+        found = self.query_one(f"#{self.place}")
+        assert isinstance(found, PlaceWidget)
+        return found
+
+    def go(self, place: str) -> None:
+        """Go to a place."""
+        self.place = place
+        self.query_one(ContentSwitcher).current = place
+        self.here.refresh_place()
+        self.here.focus_place()
+        self.refresh_lines()
+
+    def refresh_lines(self, message: str = "") -> None:
+        """Say in the lines at the edges how things stand."""
+        if not self.is_running or not self.query(TopLine):
+            return
+        solve = self.session.solve
+        self.query_one(TopLine).show(self.session)
+        self.query_one(PlacesLine).show(self.place)
+        self.query_one(SolveLine).show(self.session, None if solve is None else solve.snapshot(), message)
+        self._show_keys()
+
+    def refresh_all(self) -> None:
+        """Show everything as it stands."""
+        self.here.refresh_place()
+        self.refresh_lines()
+
+    def _show_keys(self) -> None:
+        focused = self.focused
+        mode = "typing" if isinstance(focused, Entry) else "lines" if isinstance(focused, Lines) else ""
+        self.query_one(KeysLine).show(self.place, mode, solving=self.session.solving)
+
+    @on(DescendantFocus)
+    def _focus_moved(self) -> None:
+        if self.query(KeysLine):
+            self._show_keys()
+
+    @on(FieldSheet.Committed)
+    def _committed(self, event: FieldSheet.Committed) -> None:
+        if event.message:
+            self.notify(event.message, severity="information" if event.usable else "warning", markup=False)
+        self.refresh_all()
+
+    # Actions
+
+    def check_action(self, action: str, parameters: tuple[object, ...]) -> bool | None:
+        """An action can be done where the registry says so."""
+        if action == "do" and parameters:
+            return self.place in ACTIONS[str(parameters[0])].where
+        return True
+
+    def action_do(self, name: str) -> None:
+        """Do a named action."""
+        self.run_named(name)
+
+    def run_named(self, name: str) -> None:
+        """Do a named action, here or in the place one is in; say why where it cannot be done."""
+        if name.startswith("place_"):
+            self.go(name.removeprefix("place_"))
+            return
+        own = getattr(self.here, f"do_{name}", None)
+        try:
+            (own or getattr(self, f"do_{name}"))()
+        except PlannerError as error:
+            self.notify(str(error), title="Not done", severity="warning", timeout=8, markup=False)
+        self.refresh_lines()
+
+    def action_back_to_list(self) -> None:
+        """From the values back to the list they belong to."""
+        if isinstance(self.focused, Lines):
+            self.here.focus_place()
+
+    def get_system_commands(self, screen: Screen[Any]) -> Iterable[SystemCommand]:  # noqa: ARG002
+        """The palette: the registry, and nothing else."""
+        for action in here(self.place):
+            keys = ", ".join(shown_key(key) for key in action.keys)
+            yield SystemCommand(action.long, keys, lambda name=action.name: self.run_named(name))
+
+    def do_help(self) -> None:
+        """Help for the thing in focus."""
+        keys = [(", ".join(shown_key(key) for key in action.keys), action.long) for action in here(self.place)]
+        title, text = TITLES[self.place], self.here.HELP
+        node: Any = self.focused
+        while isinstance(node, Widget) and node is not self.here:
+            if isinstance(node, FieldSheet):
+                row = node.row
+                title = f"{TITLES[self.place]}: {row.label}" if row is not None else title
+                about = f"{row.label}: {row.help}.\nWanted: {row.wanted}.\n\n" if row is not None and row.wanted else ""
+                text = f"{about}{node.HELP}"
+                break
+            node = node.parent
+        self.push_screen(HelpScreen(title, text, [pair for pair in keys if pair[0]]))
+
+    def do_panel_up(self) -> None:
+        """Read the panel upwards."""
+        self.here.query_one(VerticalScroll).scroll_page_up(animate=False)
+
+    def do_panel_down(self) -> None:
+        """Read the panel downwards."""
+        self.here.query_one(VerticalScroll).scroll_page_down(animate=False)
+
+    def do_undo(self) -> None:
+        """Undo the last edit."""
+        label = self.session.undo()
+        self.refresh_all()
+        self.notify(f"Undone: {label}" if label else "Nothing to undo.", timeout=2, markup=False)
+
+    def do_redo(self) -> None:
+        """Do an edit again."""
+        label = self.session.redo()
+        self.refresh_all()
+        self.notify(f"Done again: {label}" if label else "Nothing to do again.", timeout=2, markup=False)
+
+    def do_look(self) -> None:
+        """The next look."""
+        self.theme = next_look(self.theme)
+        self.session.remembered.remember(look=self.theme)
+        self.refresh_all()
+
+    def do_many(self) -> None:
+        """Fillings × temperatures."""
+        self.push_screen(GridScreen(self.session), self._many_added)
+
+    def _many_added(self, count: int | None) -> None:
+        if count:
+            self.go("targets")
+            last = len(self.session.document.data("week")["targets"]) - count
+            self.here.open(Place("week", ("targets", last)))  # type: ignore[union-attr]
+            self.notify(f"Added {count} targets.", markup=False)
+
+    def do_jump(self) -> None:
+        """To the step, or the target, of the finding under the cursor."""
+        place = self.query_one(FindingsPlace)
+        at, item = place.step(), place.item
+        if at is not None:
+            self.go("plan")
+            self.query_one(PlanPlace).go_to(at)
+            return
+        if item is None:
+            return
+        document = self.session.document
+        where = document.place_of(item) if isinstance(item, Problem) else self.session.place_of(item)
+        if where is None:
+            self.notify("This is about no single step or row.", markup=False)
+            return
+        self._open_row(where)
+
+    def do_to_target(self) -> None:
+        """To the target of the step under the cursor."""
+        plan = self.session.plan
+        if plan is None:
+            return
+        name = plan.steps[self.query_one(PlanPlace).timeline.at].target
+        for at, row in enumerate(self.session.document.data("week").get("targets", [])):
+            if name and row.get("name") == name:
+                self._open_row(Place("week", ("targets", at)))
+                return
+        self.notify("This step belongs to no target.", markup=False)
+
+    def _open_row(self, where: Place) -> None:
+        """The place and the line where a value is edited."""
+        first = str(where.parts[0]) if where.parts else ""
+        name = where.role if where.role == "rig" or first not in ("targets", "samples") else first
+        self.go(name)
+        for length in range(len(where.parts), -1, -1):
+            place = Place(where.role, where.parts[:length])
+            if name == "targets" or isinstance(self.session.document.get(place), dict):
+                self.here.open(place)  # type: ignore[union-attr]
+                return
+
+    # Solving
+
+    def do_solve(self) -> None:
+        """Solve the week in the background."""
+        self.session.start_solve(self._solve_changed)
+        if self._ticking is None:
+            self._ticking = self.set_interval(0.5, self.refresh_solve)
+        self.go("plan")
+
+    def _solve_changed(self) -> None:
+        """Called from the solve's thread."""
+        self.post_message(SolveChanged())
+
+    def do_stop(self) -> None:
+        """Stop with the best so far."""
+        if not self.session.solving:
+            self.notify("No solve is running.", timeout=2, markup=False)
+        self.session.stop_solve()
+
+    @on(SolveChanged)
+    def refresh_solve(self) -> None:
+        """Show how the solve stands; take its plan when it is done."""
+        found = self.session.collect()
+        if found is None:
+            return
+        if found.state in (SolveState.DONE, SolveState.FAILED):
+            if self._ticking is not None:
+                self._ticking.stop()
+                self._ticking = None
+            self._solved(found)
+        self.refresh_lines()
+
+    def _solved(self, found: Snapshot) -> None:
+        if found.error is not None:
+            self.notify(str(found.error), title="No plan", severity="warning", timeout=12, markup=False)
+        if self.query(PlanPlace):
+            self.query_one(PlanPlace).refresh_place()
+        self.here.refresh_place()
+
+    # Files
+
+    def do_save(self) -> None:
+        """Save; ask where a file has changed on disk meanwhile."""
+        try:
+            self._saved(self.session.save())
+        except ChangedOnDiskError as error:
+            self._ask_overwrite(error)
+
+    def _saved(self, written: tuple[Path, ...]) -> None:
+        names = ", ".join(path.name for path in written)
+        self.notify(f"Saved {names}." if names else "Nothing to save.", timeout=3, markup=False)
+        self.refresh_all()
+
+    @work
+    async def _ask_overwrite(self, error: ChangedOnDiskError) -> None:
+        answer = await self.push_screen_wait(
+            AskScreen(
+                f"{', '.join(error.names)} has changed on disk since it was opened.",
+                "Somebody else may have edited it. What is written now replaces what they wrote.",
+                [
+                    ("write", "write mine over it"),
+                    ("reload", "read theirs; mine can be had back with undo"),
+                    ("back", "go back, write nothing"),
+                ],
+            )
+        )
+        try:
+            if answer == "write":
+                self._saved(self.session.save(overwrite=True))
+            elif answer == "reload":
+                self.do_reload()
+        except PlannerError as failed:
+            self.notify(str(failed), title="Not done", severity="warning", timeout=8, markup=False)
+
+    def do_reload(self) -> None:
+        """Read the files from disk again."""
+        self.session.reload()
+        self.refresh_all()
+
+    @work
+    async def _offer_draft(self) -> None:
+        draft = self.session.draft()
+        if draft is None:
+            return
+        changed = draft.base != self.session.document.texts
+        why = f"It was kept at {draft.kept_at}."
+        if changed:
+            why += " The files on disk have changed since: going on with it sets those changes aside until undone."
+        answer = await self.push_screen_wait(
+            AskScreen(
+                "There is unsaved work on this week from an earlier sitting.",
+                why,
+                [("take", "go on with it"), ("discard", "discard it"), ("later", "leave it for later")],
+            )
+        )
+        if answer == "take":
+            self.session.take_draft(draft)
+        elif answer == "discard":
+            self.session.discard()
+        self.refresh_all()
+
+    @work
+    async def do_open(self) -> None:
+        """Open another week file."""
+        path = await self.push_screen_wait(PathScreen("Open a week file", str(self.session.document.week_path)))
+        if not path:
+            return
+        if self.session.document.changed and not await self._may_go("open another week"):
+            return
+        try:
+            document = Document.open(path)
+        except PlannerError as error:
+            self.notify(str(error), title="Not opened", severity="warning", timeout=8, markup=False)
+            return
+        self.session.leave()
+        self.session = Session(document, self.session.remembered, self.session.effort)
+        await self.query_one(ContentSwitcher).remove()
+        with self.app.batch_update():
+            places = list(self._compose_places())
+            await self.mount(*places, after=self.query_one(PlacesLine))
+        self.go("targets")
+        self._offer_draft()
+
+    async def _may_go(self, what: str) -> bool:
+        """Ask what becomes of unsaved work; whether one may go on."""
+        answer = await self.push_screen_wait(
+            AskScreen(
+                f"Not all is saved. Before you {what}:",
+                self.session.document.week_path.name,
+                [
+                    ("save", "save it"),
+                    ("keep", "do not save it, keep it for the next opening"),
+                    ("discard", "discard it"),
+                    ("back", "go back"),
+                ],
+            )
+        )
+        if answer == "save":
+            try:
+                self.session.save()
+            except PlannerError as error:
+                self.notify(str(error), title="Not saved", severity="warning", timeout=8, markup=False)
+                return False
+        elif answer == "discard":
+            self.session.discard()
+        return answer != "back"
+
+    @work
+    async def do_leave(self) -> None:
+        """Leave; ask about unsaved work first."""
+        if not self.session.document.changed or await self._may_go("leave"):
+            self.session.stop_solve()
+            self.exit()
+
+    async def action_quit(self) -> None:
+        """Leave the program, as `do_leave` does."""
+        self.do_leave()
