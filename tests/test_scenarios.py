@@ -267,3 +267,14 @@ def test_survey_and_windows_are_what_the_expert_offers(tmp_path: Path) -> None:
     assert minutes == pytest.approx(6 * 2 * 0.3 / 26.06e-3, abs=0.2)  # 138 min
     assert minutes == pytest.approx(138, abs=0.5)
     assert not stops(plan.findings)
+
+
+# --- An unknown persistent current: no switch step before staff confirm ------------------------------------------------
+
+
+def test_an_unknown_persistent_current_stops_everything(tmp_path: Path) -> None:
+    present = 'level = "90 %", field = "6 T", coil = "persistent", persistent_current = "unknown"'
+    asked = request(tmp_path, "2031-03-03T08:30:00", "2031-03-04T18:00:00", present, FAST)
+    assert [f.rule for f in stops(check_week(asked))] == ["persistent current is known"]
+    with pytest.raises(NoPlanError, match="no switch step may be made"):
+        plan_week(asked, seconds=1, reproducible=True)

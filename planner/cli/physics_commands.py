@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-import json
 from datetime import date, datetime
 from pathlib import Path
 from typing import TYPE_CHECKING, Any, Literal
 
 import click
 
+from planner.cli.output import print_json, say
 from planner.errors import InputError, Problem
 
 if TYPE_CHECKING:
@@ -75,7 +75,7 @@ def field(fillings: tuple[str, ...], integers: int, tilt: float, as_json: bool, 
     asked = _fillings(fillings) if fillings else default_fillings(integers)
     page = field_page(layer, asked, rig, tilt_rad=tilt)
     if as_json:
-        _print_json(page.data())
+        print_json(page.data())
     elif as_csv:
         click.echo(page.frame().to_csv(index=False), nl=False)
     else:
@@ -151,7 +151,7 @@ def density(
         shift_sigma_T=SHIFT_SIGMA_T if remanence is None else remanence,
     )
     if as_json:
-        _print_json(page.data())
+        print_json(page.data())
     else:
         from planner.cli.physics_tables import print_density
 
@@ -189,7 +189,7 @@ def magnet(rig_path: Path, figure: Path | None, as_json: bool, as_csv: bool) -> 
 
         _write(figure, magnet_svg(rig, page))
     if as_json:
-        _print_json(page.data())
+        print_json(page.data())
     elif as_csv:
         click.echo(page.frame().to_csv(index=False), nl=False)
     else:
@@ -212,7 +212,7 @@ def cooldown(rig_path: Path, by: str | None, holidays: tuple[str, ...], as_json:
     free = [_day(text, "--holiday") for text in holidays]
     page = cooldown_page(read_rig(rig_path)[0], wanted, free)
     if as_json:
-        _print_json(page.data())
+        print_json(page.data())
     else:
         from planner.cli.physics_tables import print_cooldown
 
@@ -234,11 +234,7 @@ def _write(path: Path, text: str) -> None:
         path.write_text(text, encoding="utf-8")
     except OSError as error:
         raise InputError([Problem(str(path), "", "", f"cannot be written: {error.strerror}")]) from None
-    click.echo(f"wrote {path}", err=True)
-
-
-def _print_json(data: Any) -> None:
-    click.echo(json.dumps(data, indent=1, ensure_ascii=False, default=str, allow_nan=False))
+    say(f"wrote {path}")
 
 
 COMMANDS = (field, density, magnet, cooldown)

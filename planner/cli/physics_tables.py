@@ -1,29 +1,27 @@
-"""How the pages of `planner.cli.physics_commands` look in a terminal: tables on stdout, what is to be known below them."""
+"""How the pages of `planner.cli.physics_commands` look in a terminal: tables, and below them what is to be known."""
 
 from __future__ import annotations
 
 from collections.abc import Iterable
 from typing import TYPE_CHECKING
 
-from rich.console import Console
 from rich.table import Table
 from rich.text import Text
 
+from planner.cli.output import console as console_of
 from planner.report.wording import kelvin, plain, rounded
 
 if TYPE_CHECKING:
+    from rich.console import Console
+
     from planner.desk.cooldown_page import Bounds, CooldownPage
     from planner.desk.density_page import DensityPage, DensityValue
     from planner.desk.field_page import FieldPage, FillingRow
     from planner.desk.magnet_page import MagnetPage
 
 
-def _console() -> Console:
-    return Console(highlight=False)
-
-
 def _table(*columns: str) -> Table:
-    table = Table(box=None, padding=(0, 2, 0, 0), show_edge=False, header_style="bold")
+    table = Table(box=None, padding=(0, 1, 0, 0), show_edge=False, header_style="bold")
     for place, name in enumerate(columns):
         table.add_column(name, no_wrap=True, justify="left" if place == 0 else "right")
     return table
@@ -46,7 +44,7 @@ def _density(per_m2: float) -> str:
 
 def print_field(page: FieldPage) -> None:
     """Print fillings and their fields; offers and notes below the table."""
-    console = _console()
+    console = console_of()
     spread = f" ± {_density(page.uncertainty_per_m2)}" if page.uncertainty_per_m2 else ""
     console.print(plain(f"density {_density(page.density_per_m2)}{spread}", "bold"))
     if page.rated_T is not None:
@@ -61,17 +59,22 @@ def print_field(page: FieldPage) -> None:
     console.print(table)
     for row in page.rows:
         if row.offers:
-            _says(console, [f"ν = {row.name}: {'; '.join(offer.text for offer in row.offers)}"])
+            _says(console, [f"instead of {row.name}: {'; '.join(offer.text for offer in row.offers)}"])
     _says(console, [f"ν = {row.name}: {note}" for row in page.rows for note in row.notes])
+    if any(_too_cold(row, page) for row in page.rows):
+        _says(console, [f"! colder than this stage's base, {kelvin(page.base_K or 0.0)}"])
     _says(console, page.words)
+
+
+def _too_cold(row: FillingRow, page: FieldPage) -> bool:
+    return row.resolve_K is not None and page.base_K is not None and row.resolve_K < page.base_K
 
 
 def _cells(row: FillingRow, page: FieldPage) -> list[str]:
     tilts = [f"{tilt:.0f}°" for tilt in map(_down, (row.tilt_deg, row.lambda_tilt_deg)) if tilt is not None]
     seen = "–"
     if row.resolve_K is not None:
-        cold = page.base_K is None or row.resolve_K >= page.base_K
-        seen = kelvin(row.resolve_K) + ("" if cold else " !")
+        seen = kelvin(row.resolve_K) + (" !" if _too_cold(row, page) else "")
     return [
         row.name,
         _fixed(row.field_T, 3),
@@ -92,7 +95,7 @@ def _down(tilt_deg: float | None) -> float | None:
 
 def print_density(page: DensityPage) -> None:
     """Print the density by each way and what to put into a week file."""
-    console = _console()
+    console = console_of()
     table = _table("by", "n", "± (95 %)", "", "from", "to", "points")
     if page.hall is not None and page.hall_fit is not None:
         fit = page.hall_fit
@@ -122,7 +125,7 @@ def _value(value: DensityValue) -> tuple[str, str, str]:
 
 def print_magnet(page: MagnetPage) -> None:
     """Print the magnet along its field, its sections, a quench, the stray field, what is missing, cautions."""
-    console = _console()
+    console = console_of()
     console.print(plain(page.name, "bold"))
     table = _table("field/T", "I/A", "fastest/(T/min)", "up/V", "down/V", "fraction", "margin/K")
     for row in page.rows:
@@ -145,8 +148,8 @@ def print_magnet(page: MagnetPage) -> None:
     _print_quenches(console, page)
     if page.stray:
         console.print()
-        stray = _table("stray field/mT", "axis/m", "across/m", "by", "")
-        stray.columns[-1].justify = "left"
+        stray = _table("stray field/mT", "axis/m", "across/m", "by")
+        stray.add_column("", overflow="fold")
         for line in page.stray:
             ways = (_fixed(line.axial_m, 2), _fixed(line.across_m, 2))
             stray.add_row(f"{1e3 * line.field_T:g}", *ways, line.source, line.meaning)
@@ -175,7 +178,7 @@ def _print_quenches(console: Console, page: MagnetPage) -> None:
 
 def print_cooldown(page: CooldownPage) -> None:
     """Print what a cooldown takes, part by part, and the days."""
-    console = _console()
+    console = console_of()
     console.print(plain(f"{page.name}: from 300 K", "bold"))
     table = _table("metal", "mass/kg", "heat/MJ", "nitrogen/L", "helium/L")
     for row in page.metals:
@@ -184,7 +187,7 @@ def print_cooldown(page: CooldownPage) -> None:
         )
     console.print(table)
     console.print()
-    totals = _table("in all", "least: full exchange", "most: latent heat only")
+    totals = _table("in all", "least", "most")
     for name, bounds in (
         ("nitrogen", page.nitrogen),
         ("helium into the bath", page.in_bath),

@@ -102,7 +102,7 @@ def _zone_question(offer: str) -> Question:
         zone(text)
         return text
 
-    return Question(asked.parts, asked.ask, asked.why, offer, read, 'an IANA name such as "Europe/Vienna"')
+    return Question(asked.parts, asked.ask, asked.why, offer, read, 'an IANA name such as "Europe/Vienna"', mark=OWN)
 
 
 def _people(rig: Rig) -> Script:

@@ -200,8 +200,8 @@ def _words(rig: Rig, cooldown: Cooldown, by: date | None) -> list[str]:
         words.append("This rig is cooled by its cooler: no helium is needed.")
     else:
         words.append(
-            "Real transfers fall between the bounds: slow, with a cold line and the gas led past the metal, near the "
-            "least."
+            "Least: the gas leaves as warm as the metal. Most: latent heat alone. Real transfers fall between: slow, "
+            "with a cold line and the gas led past the metal, near the least."
         )
         if cooldown.precool == "nitrogen":
             words.append(

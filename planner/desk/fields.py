@@ -15,6 +15,7 @@ from pydantic.fields import FieldInfo
 
 from planner.desk.explained import sentence
 from planner.desk.place import Part, Place, value_at
+from planner.desk.wording import plain_amount
 from planner.files import Rig, Week
 from planner.files.hours import Hours, Span
 from planner.files.model import Table, key_of
@@ -186,7 +187,7 @@ def _field(model: type[Table], attribute: str, key: str, info: FieldInfo, inner:
         ),
         help=sentence(model, attribute, info),
         required=info.is_required(),
-        default=_default(model, key, info),
+        default=_default(model, key, info, shape),
         choices=choices,
     )
 
@@ -284,7 +285,7 @@ def _examples(shape: dict[str, Any], kind: FieldKind) -> tuple[str, ...]:
     return tuple(str(one) for one in shape.get("examples", ()))
 
 
-def _default(model: type[Table], key: str, info: FieldInfo) -> str:
+def _default(model: type[Table], key: str, info: FieldInfo, shape: dict[str, Any]) -> str:
     """The value that holds where the key is left out, as text; nothing where there is none."""
     if info.is_required() or info.default is None:
         return ""
@@ -293,6 +294,8 @@ def _default(model: type[Table], key: str, info: FieldInfo) -> str:
         return "yes" if shown else "no"
     if shown in ([], {}, None, ""):
         return ""
+    if isinstance(shown, (int, float)) and "unit" in shape:
+        return plain_amount(float(shown), _unit(shape))
     if isinstance(shown, dict):
         return str(shown.get("text", ""))
     return ", ".join(sorted(shown)) if isinstance(shown, list) else str(shown)

@@ -16,10 +16,10 @@ ADD = "add"
 class GridForm:
     """The questions of a grid, and the line that adds its targets."""
 
-    def __init__(self, session: Session) -> None:
+    def __init__(self, session: Session, sample: str = "") -> None:
         self.session = session
         names = self._samples()
-        self.grid = Grid(names[0] if names else "", "")
+        self.grid = Grid(sample if sample in names else names[0] if names else "", "")
         self.added = 0
 
     def rows(self) -> list[FormRow]:
@@ -56,7 +56,7 @@ class GridForm:
         text = str(asdict(grid)[key])
         means = "" if wrong else self._means(key, grid)
         choices = self._samples() if key == "sample" else tuple("54321") if key == "priority" else ()
-        return FormRow(key, label, text, text, means, wrong, told, told, choices)
+        return FormRow(key, label, text, text, means, wrong, told, choices=choices)
 
     def _samples(self) -> tuple[str, ...]:
         rows = self.session.document.data("week").get("samples")

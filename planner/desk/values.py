@@ -92,6 +92,8 @@ def explain(field: Field, text: str) -> Explained:
 def meaning(field: Field, read: Any, text: str) -> str:
     """What was understood, where that says more than the text itself."""
     if isinstance(read, Amount) and field.kind is FieldKind.QUANTITY:
+        if field.unit != "min" and text.endswith(field.unit):
+            return ""
         said = plain_amount(float(read), field.unit)
         return "" if said.replace(" ", "") == text.replace(" ", "") else f"= {said}"
     if isinstance(read, TemperatureAsk) and read.kelvin is not None:

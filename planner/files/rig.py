@@ -105,6 +105,13 @@ class Magnet(Table):
         return self
 
     @model_validator(mode="after")
+    def _sections_differ(self) -> Magnet:
+        names = [section.name for section in self.conductor]
+        if len(set(names)) < len(names):
+            raise ValueError("conductor: each section needs a name of its own")
+        return self
+
+    @model_validator(mode="after")
     def _lambda_field_lies_above(self) -> Magnet:
         highest_T = self.lambda_field_T
         if highest_T is None:

@@ -222,13 +222,15 @@ class FridgeweekApp(App[None]):
 
     def do_many(self) -> None:
         """Fillings × temperatures."""
-        self.push_screen(GridScreen(self.session), self._many_added)
+        here = self.here
+        sample = here.sample_name() if isinstance(here, (OutlinePlace, TargetsPlace)) else ""
+        self.push_screen(GridScreen(self.session, sample), self._many_added)
 
     def _many_added(self, count: int | None) -> None:
         if count:
             self.go("targets")
             last = len(self.session.document.data("week")["targets"]) - count
-            self.here.open(Place("week", ("targets", last)))  # type: ignore[union-attr]
+            self.query_one(TargetsPlace).open(Place("week", ("targets", last)))
             self.notify(f"Added {count} targets.", markup=False)
 
     def do_jump(self) -> None:
@@ -268,7 +270,8 @@ class FridgeweekApp(App[None]):
         for length in range(len(where.parts), -1, -1):
             place = Place(where.role, where.parts[:length])
             if name == "targets" or isinstance(self.session.document.get(place), dict):
-                self.here.open(place)  # type: ignore[union-attr]
+                if isinstance(self.here, (OutlinePlace, TargetsPlace)):
+                    self.here.open(place)
                 return
 
     # Solving

@@ -124,9 +124,9 @@ class GridScreen(ModalScreen[int]):
     DEFAULT_CSS = BOX.format(name="GridScreen", width=110, height=16)
     BINDINGS: ClassVar[list[BindingType]] = [Binding("escape", "back", "back")]
 
-    def __init__(self, session: Session) -> None:
+    def __init__(self, session: Session, sample: str) -> None:
         super().__init__()
-        self.form = GridForm(session)
+        self.form = GridForm(session, sample)
 
     def compose(self) -> ComposeResult:
         """The questions."""
@@ -137,10 +137,8 @@ class GridScreen(ModalScreen[int]):
             yield FieldSheet(self.form)
 
     def on_mount(self) -> None:
-        """Begin at the fillings."""
-        lines = self.query_one(FieldSheet).lines
-        lines.focus()
-        lines.move_cursor(row=1)
+        """Begin at the first question."""
+        self.query_one(FieldSheet).lines.focus()
 
     @on(FieldSheet.Committed)
     def _committed(self, event: FieldSheet.Committed) -> None:

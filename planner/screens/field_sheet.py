@@ -16,6 +16,7 @@ from textual.widgets import DataTable, Input, Label, Static
 
 from planner.desk.form import Form, FormRow
 from planner.screens.looks import message_style
+from planner.screens.row_table import RowTable
 
 
 class Entry(Input):
@@ -53,7 +54,7 @@ class Entry(Input):
             self.cursor_position = len(self.value)
 
 
-class Lines(DataTable[Text]):
+class Lines(RowTable):
     """The lines of a form."""
 
     BINDINGS: ClassVar[list[BindingType]] = [
@@ -114,11 +115,10 @@ class FieldSheet(Vertical):
         self._about = ""
         self._rows: Sequence[FormRow] = ()
         self._typed: FormRow | None = None
-        self._shape: tuple[object, ...] = ()
 
     def compose(self) -> ComposeResult:
         """Lines, the line typed into, what is told of it."""
-        yield Lines(cursor_type="row", show_header=False, zebra_stripes=False)
+        yield Lines()
         with Horizontal(classes="entry"):
             yield Label("")
             yield Entry(select_on_focus=True, compact=True)
@@ -165,22 +165,11 @@ class FieldSheet(Vertical):
             return
         was = None if start else self.row
         self._rows = self.form.rows() if self.form is not None else ()
-        widths = self._widths()
-        shape = (tuple(row.key for row in self._rows), widths)
-        table = self.lines
+        keys = [row.key for row in self._rows]
+        at = keys.index(was.key) if was is not None and was.key in keys else 0
+        columns = [("", width) for width in self._widths()]
         with self.app.batch_update():
-            if shape != self._shape:
-                table.clear(columns=True)
-                for name, width in zip(("label", "value", "means"), widths, strict=True):
-                    table.add_column("", key=name, width=width)
-                table.add_rows(self._cells(row) for row in self._rows)
-                self._shape = shape
-            else:
-                for at, row in enumerate(self._rows):
-                    for column, cell in enumerate(self._cells(row)):
-                        table.update_cell_at((at, column), cell)  # type: ignore[arg-type]
-            keys = [row.key for row in self._rows]
-            table.move_cursor(row=keys.index(was.key) if was is not None and was.key in keys else 0)
+            self.lines.fill(columns, [self._cells(row) for row in self._rows], at)
         self._tell()
 
     def _widths(self) -> tuple[int, int, int]:
@@ -211,18 +200,18 @@ class FieldSheet(Vertical):
         if row is None:
             told.update(self._about)
             return
-        first = Text(
-            f"{row.label}: {row.help}" if row.help else row.label,
-            message_style(theme, "quiet"),
-            no_wrap=True,
-            overflow="ellipsis",
-        )
+        first = self._first_line(f"{row.label}: {row.help}" if row.help else row.label)
         if row.problem or row.means.startswith("✗"):
             second = Text(row.problem or row.means[2:], message_style(theme, "bad"))
         else:
             second = Text(f"{row.means}  " if row.means else "", message_style(theme, "good"))
             second.append(row.wanted, message_style(theme, "quiet"))
         told.update(Text("\n").join((first, second)))
+
+    def _first_line(self, text: str) -> Text:
+        first = Text(text, message_style(self.app.theme, "quiet"))
+        first.truncate(max(20, self.size.width - 3), overflow="ellipsis")
+        return first
 
     # Typing
 
@@ -250,7 +239,7 @@ class FieldSheet(Vertical):
         found = self.form.explain(self._typed.key, text)
         theme = self.app.theme
         choices = self._typed.choices
-        first = Text(self._typed.help, message_style(theme, "quiet"), no_wrap=True, overflow="ellipsis")
+        first = self._first_line(self._typed.help)
         wanted = f"↑↓ {', '.join(choices)}" if choices else self._typed.wanted
         if found.usable:
             second = Text("✓ ", message_style(theme, "good")).append(found.message, message_style(theme, "good"))

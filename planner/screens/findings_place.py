@@ -15,6 +15,7 @@ from planner.desk.wording import clean, day_time
 from planner.errors import Problem
 from planner.plan import Finding, Kind
 from planner.screens.looks import message_style
+from planner.screens.row_table import RowTable
 
 EXPLAINED = {
     Kind.STOP: "a physical limit or the maker's: never waived, no sheet is written",
@@ -24,7 +25,7 @@ EXPLAINED = {
 }
 
 
-class FindingTable(DataTable[Text]):
+class FindingTable(RowTable):
     """The findings."""
 
 
@@ -47,11 +48,10 @@ class FindingsPlace(Vertical):
         super().__init__(id=name)
         self.session = session
         self._items: list[Problem | Finding] = []
-        self._width = 0
 
     def compose(self) -> ComposeResult:
         """The list, and the one under the cursor in full."""
-        yield FindingTable(cursor_type="row")
+        yield FindingTable(header=True)
         with VerticalScroll(classes="told", can_focus=False):
             yield Static(markup=False)
 
@@ -80,20 +80,16 @@ class FindingsPlace(Vertical):
             return
         table, at = self.table, self.table.cursor_row
         self._items = [*self.session.document.problems, *self.session.findings]
+        columns = [("kind", 7), ("when", 11), ("step", 5), ("what", max(20, self.size.width - 33))]
         with self.app.batch_update():
-            table.clear(columns=True)
-            self._width = self.size.width
-            whole = max(50, self._width - 10)
-            for name, width in (("kind", 7), ("when", 11), ("step", 5), ("what", whole - 23)):
-                table.add_column(name, key=name, width=width)
-            table.add_rows(self._cells(item) for item in self._items)
-            table.move_cursor(row=max(0, min(at, len(self._items) - 1)))
+            table.fill(columns, [self._cells(item) for item in self._items], at)
         self._tell()
 
     def _cells(self, item: Problem | Finding) -> list[Text]:
         theme = self.app.theme
         if isinstance(item, Problem):
-            return [Text("FILE", message_style(theme, "bad")), Text(""), Text(""), Text(clean(str(item)))]
+            what = self._fitting(clean(str(item)))
+            return [Text("FILE", message_style(theme, "bad")), Text(""), Text(""), what]
         request = self.session.document.request
         plan = self.session.plan
         clock = plan.clock if plan is not None else request.week.clock if request is not None else None
@@ -104,8 +100,13 @@ class FindingsPlace(Vertical):
             Text(str(item.kind).upper(), message_style(theme, kind)),
             Text(when),
             Text("" if item.step is None else str(item.step)),
-            Text(f"{clean(item.rule)} · {about}{clean(item.text)}", no_wrap=True, overflow="ellipsis"),
+            self._fitting(f"{clean(item.rule)} · {about}{clean(item.text)}"),
         ]
+
+    def _fitting(self, told: str) -> Text:
+        text = Text(told)
+        text.truncate(max(20, self.size.width - 33), overflow="ellipsis")
+        return text
 
     def _tell(self) -> None:
         theme = self.app.theme
@@ -137,8 +138,7 @@ class FindingsPlace(Vertical):
 
     def on_resize(self, _event: Resize) -> None:
         """Fit the columns."""
-        if self._width != self.size.width:
-            self.refresh_place()
+        self.refresh_place()
 
     def step(self) -> int | None:
         """Position in the plan of the step that the finding under the cursor is about."""

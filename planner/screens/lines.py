@@ -97,7 +97,9 @@ class SolveLine(Static):
                 text.append(" · older than the last edits", message_style(theme, "warn"))
             text.append(_counted(session), message_style(theme, "quiet"))
         else:
-            text.append("no plan yet", message_style(theme, "quiet")).append(" · F9 solves the week as it stands")
+            text.append("no plan yet", message_style(theme, "quiet"))
+            mend = session.document.problems
+            text.append(" · mend the files first: F7" if mend else " · F9 solves the week as it stands")
             text.append(_counted(session), message_style(theme, "quiet"))
         self.update(text)
 

@@ -14,11 +14,12 @@ from planner.desk.place import Place, Role
 from planner.desk.session import Session
 from planner.screens.field_sheet import FieldSheet
 from planner.screens.looks import message_style
+from planner.screens.row_table import RowTable
 
 WIDTH = 25
 
 
-class Outline(DataTable[Text]):
+class Outline(RowTable):
     """The tables of a file."""
 
 
@@ -52,12 +53,11 @@ class OutlinePlace(Horizontal):
 
     def compose(self) -> ComposeResult:
         """The outline, and the form."""
-        yield Outline(cursor_type="row", show_header=False)
+        yield Outline()
         yield FieldSheet()
 
     def on_mount(self) -> None:
         """Fill the outline."""
-        self.tree_table.add_column("", key="title", width=WIDTH - 4)
         self.refresh_place()
 
     @property
@@ -90,17 +90,10 @@ class OutlinePlace(Horizontal):
         was = self.node
         at = self.tree_table.cursor_row
         self._outlined = outline(self.session.document, self._role, self._only, self._without)
-        table = self.tree_table
+        places = [node.place for node in self._outlined]
+        row = places.index(was.place) if was is not None and was.place in places else at
         with self.app.batch_update():
-            if table.row_count == len(self._outlined):
-                for place, node in enumerate(self._outlined):
-                    table.update_cell_at((place, 0), self._title(node))  # type: ignore[arg-type]
-            else:
-                table.clear()
-                table.add_rows([self._title(node)] for node in self._outlined)
-            places = [node.place for node in self._outlined]
-            row = places.index(was.place) if was is not None and was.place in places else min(at, len(places) - 1)
-            table.move_cursor(row=max(0, row))
+            self.tree_table.fill([("", WIDTH - 4)], [[self._title(node)] for node in self._outlined], row)
         self._show()
         self.sheet.refresh_form()
 
@@ -110,6 +103,13 @@ class OutlinePlace(Horizontal):
             if node.place == place:
                 self.tree_table.move_cursor(row=at)
                 self._show()
+
+    def sample_name(self) -> str:
+        """Name of the sample under the cursor, nothing elsewhere."""
+        node = self.node
+        if node is None or node.place.parts[:1] != ("samples",) or len(node.place.parts) < 2:
+            return ""
+        return str(self.session.document.get(Place(node.place.role, (*node.place.parts[:2], "name"))) or "")
 
     def _title(self, node: Node) -> Text:
         theme = self.app.theme

@@ -14,11 +14,12 @@ from planner.desk.place import Place
 from planner.desk.session import Session
 from planner.screens.field_sheet import FieldSheet
 from planner.screens.looks import message_style
+from planner.screens.row_table import RowTable
 
 TARGETS = Place("week", ("targets",))
 
 
-class TargetTable(DataTable[Text]):
+class TargetTable(RowTable):
     """The targets."""
 
 
@@ -43,12 +44,11 @@ class TargetsPlace(Vertical):
         self.session = session
         self._rows: list[TargetRow] = []
         self._opened: tuple[Place, str] | None = None
-        self._width = -1
         self._widths: dict[str, int] = {}
 
     def compose(self) -> ComposeResult:
         """The table, and the form."""
-        yield TargetTable(cursor_type="row", cell_padding=0)
+        yield TargetTable(header=True, padding=0)
         yield FieldSheet()
 
     def on_mount(self) -> None:
@@ -81,18 +81,9 @@ class TargetsPlace(Vertical):
             return
         table, at = self.table, self.table.cursor_row
         self._rows = target_rows(self.session)
+        self._widths = self._columns()
         with self.app.batch_update():
-            if self._width != self.size.width:
-                self._columns()
-                table.add_rows(self._cells(row) for row in self._rows)
-            elif table.row_count == len(self._rows):
-                for place, row in enumerate(self._rows):
-                    for column, cell in enumerate(self._cells(row)):
-                        table.update_cell_at((place, column), cell)  # type: ignore[arg-type]
-            else:
-                table.clear()
-                table.add_rows(self._cells(row) for row in self._rows)
-            table.move_cursor(row=max(0, min(at, len(self._rows) - 1)))
+            table.fill(list(self._widths.items()), [self._cells(row) for row in self._rows], at)
         self._show()
         self.sheet.refresh_form()
 
@@ -102,20 +93,20 @@ class TargetsPlace(Vertical):
             self.table.move_cursor(row=place.parts[1])
             self._show()
 
-    def _columns(self) -> None:
+    def sample_name(self) -> str:
+        """Name of the sample of the target under the cursor."""
+        return self.row.sample if self.row is not None else ""
+
+    def _columns(self) -> dict[str, int]:
         """Columns that share the width; the kind stands in the form as well and is left out where room is short."""
-        self._width = self.size.width
-        self.table.clear(columns=True)
-        whole = max(60, self._width - 1)
+        whole = max(60, self.size.width - 1)
         narrow = {"": 2, "kind": 13, "sample": 8, "stage": 9, "p": 2}
         if whole < 100:
             del narrow["kind"]
         left = whole - sum(narrow.values())
         wide = {"target": left * 2 // 5, "asks": left // 5, "means on this rig now": left - left * 2 // 5 - left // 5}
         names = ("", "target", "kind", "sample", "asks", "means on this rig now", "stage", "p")
-        self._widths = {name: (narrow | wide)[name] for name in names if name in narrow | wide}
-        for name, width in self._widths.items():
-            self.table.add_column(Text(name), key=name or "mark", width=width)
+        return {name: (narrow | wide)[name] for name in names if name in narrow | wide}
 
     def _cells(self, row: TargetRow) -> list[Text]:
         theme = self.app.theme

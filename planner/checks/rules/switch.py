@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from planner.checks.plan_view import MOVES_FIELD, Placed, PlanView
 from planner.checks.registry import Rule, register
 from planner.checks.spans import less, lies_in, next_fit
+from planner.checks.week_view import WeekView
 from planner.checks.wording import length, number, tesla
 from planner.files.rig import Switch
 from planner.plan import CoilMode, Finding, Kind
@@ -220,6 +221,18 @@ def persistent_current_known(view: PlanView) -> Iterator[Finding]:
                 f'"{item.leg.action}" with the persistent current unknown',
                 "let staff determine the field first, with a Hall probe or a sample's Hall voltage, and log it",
             )
+
+
+@KNOWN.week
+def present_current_known(view: WeekView) -> Iterator[Finding]:
+    """A week that begins with a persistent field of which nobody logged the current."""
+    if view.week.present.persistent_current_A == "unknown":
+        yield KNOWN.finding(
+            f"The week begins persistent at {tesla(view.week.present.field_T)} with its current unknown: no switch is "
+            "worked before staff confirm it, so nothing that changes the field can be planned.",
+            at_s=0,
+            mend="let staff determine the field first, with a Hall probe or a sample's Hall voltage, and log it",
+        )
 
 
 @LEADS.plan
