@@ -269,7 +269,7 @@ def test_survey_and_windows_are_what_the_expert_offers(tmp_path: Path) -> None:
     assert not stops(plan.findings)
 
 
-# --- An unknown persistent current: no switch step before staff confirm ------------------------------------------------
+# --- An unknown persistent current: no switch step before staff confirm ---------------------------------------------
 
 
 def test_an_unknown_persistent_current_stops_everything(tmp_path: Path) -> None:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Sequence
+from dataclasses import replace
 from pathlib import Path
 from typing import Any
 
@@ -213,7 +214,8 @@ class Session:
             return self.plan.findings if self.plan is not None else ()
         found = check_week(request)
         if self.plan is not None:
-            found = (*check_plan(request, self.plan), *found)
+            there = replace(self.plan, sources=request.sources)  # judged by the week and rig as they stand
+            found = (*check_plan(request, there), *found)
         kinds = list(Kind)
         return tuple(sorted(dict.fromkeys(found), key=lambda one: kinds.index(one.kind)))
 

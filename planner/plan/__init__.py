@@ -5,12 +5,9 @@ from planner.plan.plan import (
     PLAN_FORMAT,
     HandOrder,
     LeftOut,
-    Leg,
     Plan,
     Score,
     Source,
-    Step,
-    StepKind,
 )
 from planner.plan.state import (
     ZERO,
@@ -25,6 +22,7 @@ from planner.plan.state import (
     along_z,
     magnitude,
 )
+from planner.plan.step import Leg, Step, StepKind
 
 __all__ = [
     "PLAN_FORMAT",

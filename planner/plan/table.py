@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from collections.abc import Sequence
 
 import pandas as pd
 
-if TYPE_CHECKING:
-    from planner.plan.plan import Plan
+from planner.clock import Clock
+from planner.plan.step import Step
 
 COLUMNS = {
     "step": "int64",
@@ -37,9 +37,8 @@ COLUMNS = {
 }
 
 
-def steps_frame(plan: Plan) -> pd.DataFrame:
+def steps_frame(steps: Sequence[Step], clock: Clock) -> pd.DataFrame:
     """One row a step; times are zone-aware datetimes, fields are along z."""
-    clock = plan.clock
     rows = [
         {
             "step": step.number,
@@ -67,6 +66,6 @@ def steps_frame(plan: Plan) -> pd.DataFrame:
             "attended": step.attended,
             "people": ", ".join(step.people),
         }
-        for step in plan.steps
+        for step in steps
     ]
     return pd.DataFrame(rows, columns=list(COLUMNS)).astype(COLUMNS)

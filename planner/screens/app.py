@@ -45,7 +45,7 @@ class FridgeweekApp(App[None]):
     TITLE = "fridgeweek"
     ENABLE_COMMAND_PALETTE = True
     CSS = """
-    Screen { background: $background; color: $foreground; layers: base; }
+    Screen { background: $background; color: $foreground; }
     ContentSwitcher { height: 1fr; }
     DataTable { background: $background; scrollbar-size: 1 1; overflow-x: hidden; }
     VerticalScroll { scrollbar-size: 1 1; }
