@@ -26,7 +26,7 @@ def main(ctx: click.Context) -> None:
     """The group itself: without a command it opens the screens, where there is a terminal."""
     if ctx.invoked_subcommand is not None:
         return
-    if not (sys.stdin.isatty() and sys.stdout.isatty()):
+    if not (sys.stdin.isatty() and sys.stderr.isatty()):
         click.echo(ctx.get_help())
         return
     _open(None, 30.0, 0, reproducible=False)
@@ -43,7 +43,7 @@ for _name, _command in commands.commands.items():
 @click.option("--reproducible", is_flag=True, help="Stop on a count of work, not on the clock: same seed, same plan.")
 def open_(week: Path | None, seconds: float, seed: int, reproducible: bool) -> None:
     """Open WEEK on the screen; the last one if none is given, the small demo week the first time."""
-    if not (sys.stdin.isatty() and sys.stdout.isatty()):
+    if not (sys.stdin.isatty() and sys.stderr.isatty()):
         raise click.UsageError("the screens need a terminal; `fridgeweek plan WEEK` needs none")
     _open(week, seconds, seed, reproducible=reproducible)
 

@@ -15,8 +15,12 @@ if TYPE_CHECKING:
     from planner.desk.layer import Layer
     from planner.files import Rig
 
+    _FloatType = click.ParamType[float]
+else:
+    _FloatType = click.ParamType  # releases before 8.2 take no type here
 
-class Quantity(click.ParamType):
+
+class Quantity(_FloatType):
     """A quantity with its unit, read into a float of ``unit``."""
 
     def __init__(self, unit: str, *, above: float | None = None, least: float | None = None) -> None:

@@ -96,17 +96,15 @@ def _down(tilt_deg: float | None) -> float | None:
 def print_density(page: DensityPage) -> None:
     """Print the density by each way and what to put into a week file."""
     console = console_of()
-    table = _table("by", "n", "± (95 %)", "", "from", "to", "points")
+    table = _table("by", "n/(1e11 cm^-2)", "± (95 %)", "", "field/T", "points")
     if page.hall is not None and page.hall_fit is not None:
         fit = page.hall_fit
-        table.add_row("Hall slope", *_value(page.hall), "0 T", f"{fit.largest_T:.3g} T", str(fit.points))
+        table.add_row("Hall slope", *_value(page.hall), f"to {fit.largest_T:.3g}", str(fit.points))
     if page.oscillations is not None and page.oscillation_fit is not None:
         wave = page.oscillation_fit
-        table.add_row(
-            f"period in 1/B, {wave.cycles:.0f} cycles", *_value(page.oscillations), f"{wave.low_T:.3g} T",
-            f"{wave.high_T:.3g} T", str(wave.points),
-        )  # fmt: skip
-    table.add_row(Text("plan with", "bold"), *_value(page.best), "", "", "")
+        name = f"period in 1/B, {wave.cycles:.0f} cycles"
+        table.add_row(name, *_value(page.oscillations), f"{wave.low_T:.3g}–{wave.high_T:.3g}", str(wave.points))
+    table.add_row(Text("plan with", "bold"), *_value(page.best), "", "")
     console.print(table)
     if page.agree:
         console.print(Text("The two ways agree."))
@@ -115,12 +113,16 @@ def print_density(page: DensityPage) -> None:
     # Rounded up: the interval written is never narrower than the one found.
     share = max(0.01, -(-page.best.percent * 100 // 1) / 100)
     console.print(Text(f'density = "{abs(page.best.density_per_m2) / 1e15:.5g}e11 cm^-2"'))
-    console.print(Text(f'density_error = "{share:.2g} %"'))
+    console.print(Text(f'density_error = "{share:.2f} %"'))
     console.print(Text(f'carriers = "{page.carriers}"'))
 
 
 def _value(value: DensityValue) -> tuple[str, str, str]:
-    return _density(value.density_per_m2), _density(value.uncertainty_per_m2), f"{value.percent:.2g} %"
+    return (
+        _fixed(value.density_per_m2 / 1e15, 4),
+        _fixed(value.uncertainty_per_m2 / 1e15, 4),
+        f"{value.percent:.2f} %",
+    )
 
 
 def print_magnet(page: MagnetPage) -> None:

@@ -12,10 +12,12 @@ from pydantic import ValidationError
 
 from planner.errors import InputError, Problem
 from planner.files import Request, Rig, Week, read_week
+from planner.files.problems import shown
 from planner.plan import PLAN_FORMAT, Finding, Plan
+from planner.plan.sound import unsound
 from planner.planning import Progress
 
-LARGEST_PLAN = 200_000_000
+LARGEST_PLAN = 20_000_000
 
 open_week = read_week
 
@@ -41,27 +43,39 @@ def open_plan(path: Path | str) -> Plan:
     Raises
     ------
     InputError
-        If the file is missing or is no plan of this version.
+        If the file is missing, is no plan of this version, or holds numbers that no plan can hold.
     """
     path = Path(path)
     try:
         if path.stat().st_size > LARGEST_PLAN:
             raise InputError([Problem(path.name, "", "", f"expected at most {LARGEST_PLAN} bytes")])
         text = path.read_bytes()
-    except OSError as error:
-        raise InputError([Problem(str(path), "", "", f"cannot be read: {error.strerror}")]) from None
+    except FileNotFoundError:
+        raise InputError([Problem(str(path)[:200], "", "", "there is no such file")]) from None
+    except (OSError, ValueError) as error:
+        raise InputError([Problem(path.name[:200], "", "", f"cannot be read: {str(error)[:200]}")]) from None
     try:
         plan = Plan.from_json(text)
     except ValidationError as error:
-        problems = [
-            Problem(path.name, ".".join(str(part) for part in detail["loc"]), "", detail["msg"])
-            for detail in error.errors(include_url=False)[:20]
-        ]
-        raise InputError(problems) from None
-    if plan.format != PLAN_FORMAT:
-        expected = f"this program reads plan format {PLAN_FORMAT}"
-        raise InputError([Problem(path.name, "format", str(plan.format), expected)])
+        raise InputError(_plan_problems(path.name, error)) from None
+    if found := unsound(plan):
+        raise InputError([Problem(path.name, where, "", expected) for where, expected in found])
     return plan
+
+
+def _plan_problems(name: str, error: ValidationError) -> list[Problem]:
+    """What is wrong with a file that should be a plan: not one at all, of another version, or damaged."""
+    details = error.errors(include_url=False)
+    first = details[0]
+    if first["type"] == "json_invalid":
+        return [Problem(name, "", "", f"not valid JSON: {first['ctx']['error']}")]
+    if other := next((detail for detail in details if detail["loc"] == ("format",)), None):
+        if other["type"] != "missing":
+            return [Problem(name, "format", shown(other["input"]), f"this program reads plan format {PLAN_FORMAT}")]
+    if sum(detail["type"] == "missing" and len(detail["loc"]) == 1 for detail in details) > 3 or not first["loc"]:
+        return [Problem(name, "", "", "is no plan made by this program")]
+    places = [(".".join(str(part) for part in detail["loc"]), detail["msg"]) for detail in details[:5]]
+    return [Problem(name, where, "", f"is damaged: {message}") for where, message in places]
 
 
 def check_week_file(path: Path | str) -> tuple[Request, tuple[Finding, ...]]:

@@ -145,7 +145,7 @@ def field_page(
     """
     asked = default_fillings() if fillings is None else fillings
     limits = _Limits.of(rig)
-    reach = _Reacher(layer, limits, tilt_rad)
+    reach = _Reacher(layer, limits, tilt_rad, tuple(_candidates(layer, tilt_rad)))
     rows = tuple(reach.row(filling) for filling in asked)
     base = None if rig is None else float(rig.stage.base_K)
     return FieldPage(
@@ -199,12 +199,31 @@ class _Limits:
 
 
 @dataclass(frozen=True, slots=True)
+class _Candidate:
+    """A filling with a plateau that may be offered: its total field, and the furthest end of its interval."""
+
+    filling: Fraction
+    total_T: float
+    furthest_T: float
+
+
+def _candidates(layer: Layer, tilt_rad: float) -> list[_Candidate]:
+    known = [each for each in default_fillings() if has_plateau(each)]
+    fillings = np.array([float(each) for each in known])
+    field = np.asarray(total_T(field_for_filling_T(layer.now_per_m2, fillings), tilt_rad))
+    ends = field_interval_T(layer.now_per_m2, layer.uncertainty_per_m2, fillings)
+    furthest = np.max(np.abs([total_T(end, tilt_rad) for end in ends]), axis=0)
+    return [_Candidate(*each) for each in zip(known, field.tolist(), furthest.tolist(), strict=True)]
+
+
+@dataclass(frozen=True, slots=True)
 class _Reacher:
     """Judges fillings of one layer at one tilt."""
 
     layer: Layer
     limits: _Limits
     tilt_rad: float
+    candidates: tuple[_Candidate, ...]
 
     def row(self, filling: float | Fraction) -> FillingRow:
         """Lay out one filling."""
@@ -291,20 +310,19 @@ class _Reacher:
 
     def _other_fillings(self, nu: float) -> list[Offer]:
         """The nearest fillings with a plateau that lie wholly in reach: within the rated field, else by lambda."""
-        sign = 1 if nu > 0 else -1
-        known = [sign * each for each in default_fillings() if has_plateau(each) and float(each) != abs(nu)]
+        others = [each for each in self.candidates if abs(float(each.filling) - abs(nu)) > 1e-9]
         for limit in self.limits.fields_T:
-            inside = [each for each in known if self._sizes(*self._interval(float(each)))[1] <= limit * (1 + _EDGE)]
+            inside = [each for each in others if each.furthest_T <= limit * (1 + _EDGE)]
             if inside:
-                near = sorted(inside, key=lambda each: abs(float(each) - nu))[:MOST_OFFERS]
+                near = sorted(inside, key=lambda each: abs(float(each.filling) - abs(nu)))[:MOST_OFFERS]
                 return [self._other(each, nu, limit) for each in near]
         return []
 
-    def _other(self, filling: Fraction, nu: float, limit_T: float) -> Offer:
-        field = float(field_for_filling_T(self.layer.now_per_m2, float(filling)))
-        mate = ", its mirror" if abs(abs(float(filling)) + abs(nu) - 1.0) < 1e-9 else ""
-        text = f"ν = {filling} at {float(total_T(field, self.tilt_rad)):.2f} T{mate}"
-        return Offer("filling", text, float(filling), "", limit_T)
+    def _other(self, other: _Candidate, nu: float, limit_T: float) -> Offer:
+        mate = ", its mirror" if abs(float(other.filling) + abs(nu) - 1.0) < 1e-9 else ""
+        filling = other.filling if nu > 0 else -other.filling
+        field = other.total_T if nu > 0 else -other.total_T
+        return Offer("filling", f"ν = {filling} at {field:.2f} T{mate}", float(filling), "", limit_T)
 
     def _densities(self, nu: float, limit_T: float) -> list[Offer]:
         """The density that brings the whole interval in reach, and the gate voltages that give it."""

@@ -72,8 +72,8 @@ class SheetForm:
         formats = [name for name, on in self.formats.items() if on]
         self.written = ()
         if not formats:
-            self.told = ("No format is chosen.",)
-            return Explained(False, self.told[0])
+            self.told = ("Not written.", "No format is chosen.")
+            return Explained(False, self.told[1])
         try:
             self.written = self.session.write(self.folder, formats, review=self.review)
         except PlannerError as error:

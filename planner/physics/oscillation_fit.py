@@ -33,7 +33,13 @@ _POINTS_PER_CYCLE = 4.0
 _FREQUENCIES = 400
 _COARSE_POINTS = 500
 _BACKGROUND = 4
+_DAMPINGS = np.array([0.12, 0.4])  # shares of F, for a first look
 _STARTS = 4
+_ROUNDING = 1e-9
+_STANDS_OUT = 30.0
+"""Gain in twice the logarithm of the likelihood by which two columns stand out of noise: by chance, in one trace of
+some thousands (chi-squared of two degrees of freedom, 800 trials)."""
+
 _DAMPING_WEIGHT = 1.0 / 3.0  # a factor of twenty either way: only keeps a damping that nothing shows from running off
 
 
@@ -143,18 +149,14 @@ def _coarse(data: _Points, step_T: float, expected_T: float | None) -> float:
         part = data.between(low, high).thinned(_COARSE_POINTS)
         if part.field.size < 30:
             continue
-        size = np.abs(part.field)
-        smooth = _without(_background(size, high), part.ohm)
-        for factor in (0.1, 0.4):
-            # An error of the trial frequency must not cost phase: the grid is closer than a quarter of a cycle.
-            waves = _waves(size, float(frequency), factor * float(frequency), harmonics=1)
-            left = _without(np.column_stack([_background(size, high), waves]), part.ohm)
-            total = float(smooth @ smooth)
-            gained = 0.0 if total == 0.0 else (total - float(left @ left)) / total
-            # What two columns explain of pure noise falls with the number of points.
-            worth = gained * np.sqrt(part.field.size) if gained > 12.0 / part.field.size else 0.0
-            if worth > best:
-                best, found = worth, float(frequency)
+        total, gains = _gains(np.abs(part.field), part.ohm, high, np.full(2, frequency), frequency * _DAMPINGS)
+        if total <= (_ROUNDING * float(np.abs(part.ohm).max())) ** 2 * part.ohm.size:
+            continue
+        gained = float(np.max(gains)) / total
+        stands_out = -part.field.size * np.log1p(-min(gained, 1.0 - 1e-12)) > _STANDS_OUT
+        worth = gained * np.sqrt(part.field.size) if stands_out else 0.0
+        if worth > best:
+            best, found = float(worth), float(frequency)
     if best == 0.0:
         raise OutOfRangeError(f"no oscillation of at least {FEWEST_CYCLES:g} cycles in 1/B stands out of the scatter")
     return found
@@ -174,29 +176,43 @@ def _nearby(data: _Points, step_T: float, frequency_T: float, shift_sigma_T: flo
     """
     low, high, _ = _range_of(frequency_T, data, step_T)
     part = data.between(low, high).thinned(_COARSE_POINTS)
-    trials: dict[float, tuple[float, _Start]] = {}
+    frequencies = np.repeat(frequency_T * np.linspace(0.88, 1.12, 41), 2)
+    dampings = frequency_T * np.tile(_DAMPINGS, 41)
+    trials: list[list[tuple[float, _Start]]] = [[] for _ in range(41)]
     for shift in shift_sigma_T * np.linspace(-2.4, 2.4, 9):
         size = np.maximum(np.abs(part.field - shift), 0.2 * low)
-        background = _background(size, high)
-        for factor in np.linspace(0.88, 1.12, 41):
-            for damping in (0.15, 0.4):
-                trial = _Start(float(factor) * frequency_T, damping * frequency_T, float(shift))
-                waves = _waves(size, trial.frequency_T, trial.damping_T, harmonics=1)
-                left = _without(np.column_stack([background, waves]), part.ohm)
-                cost = _cost(left, np.array([shift / shift_sigma_T]))
-                if cost < trials.get(trial.frequency_T, (np.inf, trial))[0]:
-                    trials[trial.frequency_T] = cost, trial
-    costs = [trials[frequency] for frequency in sorted(trials)]
-    dips = [
-        each for at, each in enumerate(costs) if each[0] <= min(other[0] for other in costs[max(0, at - 1) : at + 2])
-    ]
+        total, gains = _gains(size, part.ohm, high, frequencies, dampings)
+        costs = _cost(np.maximum(total - gains, 1e-12 * total), size.size, np.array([shift / shift_sigma_T]))
+        for at, cost in enumerate(costs):
+            trials[at // 2].append((float(cost), _Start(float(frequencies[at]), float(dampings[at]), float(shift))))
+    best = [min(each, key=lambda trial: trial[0]) for each in trials]
+    dips = [each for at, each in enumerate(best) if each[0] <= min(other[0] for other in best[max(0, at - 1) : at + 2])]
     return [start for _, start in sorted(dips, key=lambda each: each[0])[:_STARTS]]
 
 
-def _cost(left: FloatArray, shifts_sigma: FloatArray) -> float:
+def _cost(left_squared: FloatArray, points: int, shifts_sigma: FloatArray) -> FloatArray:
     """Minus twice the logarithm of the likelihood, but for a constant: scatter unknown, shifts normally distributed."""
-    total = max(float(left @ left), 1e-300)
-    return left.size * float(np.log(total / left.size)) + float(shifts_sigma @ shifts_sigma)
+    return np.asarray(points * np.log(np.maximum(left_squared, 1e-300) / points) + float(shifts_sigma @ shifts_sigma))
+
+
+def _gains(
+    size: FloatArray, ohm: FloatArray, high_T: float, frequencies_T: FloatArray, dampings_T: FloatArray
+) -> tuple[float, FloatArray]:
+    """Sum of squares that the background leaves, and how much of it a damped wave of each frequency takes away."""
+    basis, _ = np.linalg.qr(_background(size, high_T))
+    rest = ohm - basis @ (basis.T @ ohm)
+    fall = np.exp(-np.outer(1.0 / size - 1.0 / float(size.max()), dampings_T))
+    phase = np.outer(2.0 * np.pi / size, frequencies_T)
+    even, odd = fall * np.cos(phase), fall * np.sin(phase)
+    even -= basis @ (basis.T @ even)
+    odd -= basis @ (basis.T @ odd)
+    ee, oo, eo = (even * even).sum(axis=0), (odd * odd).sum(axis=0), (even * odd).sum(axis=0)
+    er, or_ = even.T @ rest, odd.T @ rest
+    determinant = ee * oo - eo**2
+    regular = determinant > 1e-9 * ee * oo
+    safe = np.where(regular, determinant, 1.0)
+    gains = np.where(regular, (er**2 * oo - 2.0 * er * or_ * eo + or_**2 * ee) / safe, 0.0)
+    return float(rest @ rest), np.asarray(gains)
 
 
 def _background(size: FloatArray, high_T: float) -> FloatArray:
@@ -284,7 +300,7 @@ def _refined(part: _Points, start: _Start, shift_sigma_T: float) -> tuple[float,
         shift_down_T=float(shifts[-1]) if -1 in shifts else None,
         explained=1.0 - float(left @ left) / total if total else 1.0,
     )
-    return _cost(left, unknown[2:]), fit
+    return float(_cost(np.asarray(left @ left), left.size, unknown[2:])), fit
 
 
 def _sigma(model: _Model, unknown: FloatArray, noise: float) -> float:

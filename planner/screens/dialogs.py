@@ -13,7 +13,7 @@ from textual.screen import ModalScreen
 from textual.widgets import Input, OptionList, Static
 from textual.widgets.option_list import Option
 
-from planner.desk.form_grid import ADD, GridForm
+from planner.desk.form_grid import GridForm
 from planner.desk.session import Session
 from planner.screens.field_sheet import FieldSheet
 
@@ -143,8 +143,15 @@ class GridScreen(ModalScreen[int]):
     @on(FieldSheet.Committed)
     def _committed(self, event: FieldSheet.Committed) -> None:
         event.stop()
-        if event.key == ADD and event.usable:
+
+    @on(FieldSheet.Act)
+    def _add(self, event: FieldSheet.Act) -> None:
+        event.stop()
+        done = self.form.commit(event.key, "")
+        if done.usable:
             self.dismiss(self.form.added)
+        else:
+            self.app.notify(done.message, severity="warning", markup=False)
 
     def action_back(self) -> None:
         """Nothing is to be added."""

@@ -87,7 +87,7 @@ class FieldSheet(Vertical):
     FieldSheet.typing .entry { display: block; }
     FieldSheet .entry Label { width: auto; padding: 0 1 0 1; text-style: bold; }
     FieldSheet Entry { width: 1fr; height: 1; padding: 0; background: $panel; }
-    FieldSheet .told { height: 2; color: $foreground; padding: 0 1; }
+    FieldSheet .told { height: 3; color: $foreground; padding: 0 1; }
     """
 
     HELP = (
@@ -101,12 +101,19 @@ class FieldSheet(Vertical):
     )
 
     class Committed(Message):
-        """A line has been changed, or has done what it does."""
+        """A line has been changed, or what was typed is not usable."""
 
         def __init__(self, key: str, message: str, *, usable: bool) -> None:
             self.key = key
             self.message = message
             self.usable = usable
+            super().__init__()
+
+    class Act(Message):
+        """A line that does something was chosen; whoever holds the form does it."""
+
+        def __init__(self, key: str) -> None:
+            self.key = key
             super().__init__()
 
     def __init__(self, form: Form | None = None) -> None:
@@ -198,7 +205,7 @@ class FieldSheet(Vertical):
         told = self.query_one(".told", Static)
         theme = self.app.theme
         if row is None:
-            told.update(self._about)
+            told.update(self._about, layout=False)
             return
         first = self._first_line(f"{row.label}: {row.help}" if row.help else row.label)
         if row.problem or row.means.startswith("✗"):
@@ -206,7 +213,7 @@ class FieldSheet(Vertical):
         else:
             second = Text(f"{row.means}  " if row.means else "", message_style(theme, "good"))
             second.append(row.wanted, message_style(theme, "quiet"))
-        told.update(Text("\n").join((first, second)))
+        told.update(Text("\n").join((first, second)), layout=False)
 
     def _first_line(self, text: str) -> Text:
         first = Text(text, message_style(self.app.theme, "quiet"))
@@ -221,8 +228,7 @@ class FieldSheet(Vertical):
         if row is None or self.form is None:
             return
         if row.act:
-            done = self.form.commit(row.key, "")
-            self._after(row.key, done.message, usable=done.usable)
+            self.post_message(self.Act(row.key))
             return
         self._typed = row
         entry = self.query_one(Entry)
@@ -247,7 +253,7 @@ class FieldSheet(Vertical):
                 second.append(wanted, message_style(theme, "quiet"))
         else:
             second = Text(f"✗ {found.message}", message_style(theme, "bad"))
-        self.query_one(".told", Static).update(Text("\n").join((first, second)))
+        self.query_one(".told", Static).update(Text("\n").join((first, second)), layout=False)
 
     def _close(self) -> None:
         if self._typed is not None:

@@ -35,7 +35,7 @@ class TopLine(Static):
         names = Text(f"  {document.name('week')} · {document.name('rig')}", message_style(theme, "quiet"))
         names.truncate(max(0, self.app.size.width - 2 - text.cell_len - ends.cell_len), overflow="ellipsis")
         text.append_text(names).append_text(ends)
-        self.update(text)
+        self.update(text, layout=False)
 
 
 class PlacesLine(Static):
@@ -54,7 +54,7 @@ class PlacesLine(Static):
             text.append(f"[{TITLES[name]}]" if name == place else TITLES[name], "bold reverse" if name == place else "")
             self._spans.append((start, text.cell_len, name))
             text.append("  ")
-        self.update(text)
+        self.update(text, layout=False)
 
     def on_click(self, event: Click) -> None:
         """Go to the place that was clicked."""
@@ -101,7 +101,7 @@ class SolveLine(Static):
             mend = session.document.problems
             text.append(" · mend the files first: F7" if mend else " · F9 solves the week as it stands")
             text.append(_counted(session), message_style(theme, "quiet"))
-        self.update(text)
+        self.update(text, layout=False)
 
 
 def _counted(session: Session) -> str:
@@ -133,4 +133,4 @@ class KeysLine(Static):
                 continue
             text.append(key, message_style(theme, "strong"))
             text.append(f" {told}  ", message_style(theme, "quiet"))
-        self.update(text)
+        self.update(text, layout=False)

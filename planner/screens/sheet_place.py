@@ -3,12 +3,14 @@
 from __future__ import annotations
 
 from rich.text import Text
+from textual import on
 from textual.app import ComposeResult
 from textual.containers import Vertical, VerticalScroll
 from textual.widgets import Static
 
 from planner.desk.form_sheet import WRITE, SheetForm
 from planner.desk.session import Session
+from planner.desk.values import Explained
 from planner.runsheet.cautions import cautions_of
 from planner.screens.field_sheet import FieldSheet
 from planner.screens.looks import message_style
@@ -18,8 +20,8 @@ class SheetPlace(Vertical):
     """Write the run sheet for whoever is on shift."""
 
     DEFAULT_CSS = """
-    SheetPlace .cautions { height: auto; max-height: 8; padding: 0 1; background: $panel; }
-    SheetPlace FieldSheet { height: 9; }
+    SheetPlace .cautions { height: auto; max-height: 7; padding: 0 1; background: $panel; }
+    SheetPlace FieldSheet { height: 10; }
     SheetPlace .came { height: 1fr; padding: 0 1; border-top: tall $panel; }
     """
 
@@ -69,12 +71,25 @@ class SheetPlace(Vertical):
         self.query_one(".cautions", Static).update(text)
         self.sheet.refresh_form()
         came = Text("\n".join(self.form.told))
-        if self.form.told and not self.form.written:
+        if self.form.told[:1] == ("Not written.",):
             came.stylize(message_style(theme, "bad"))
         self.query_one(".came Static", Static).update(came)
 
+    @on(FieldSheet.Act)
+    def _act(self, event: FieldSheet.Act) -> None:
+        event.stop()
+        self.do_write()
+
     def do_write(self) -> None:
-        """Write the sheets."""
+        """Write the sheets, beside the screen: figures take a second or two."""
+        self.form.told = ("Writing …",)
+        self.refresh_place()
+        self.run_worker(self._write, thread=True, exclusive=True)
+
+    def _write(self) -> None:
         done = self.form.commit(WRITE, "")
+        self.app.call_from_thread(self._wrote, done)
+
+    def _wrote(self, done: Explained) -> None:
         self.refresh_place()
         self.app.notify(done.message, severity="information" if done.usable else "warning", markup=False)

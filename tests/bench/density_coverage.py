@@ -2,8 +2,8 @@
 
     python -m tests.bench.density_coverage [CASES]
 
-Each case draws density, sign, mobilities, temperature, range of field, directions, offset, remanence and lag; the noise is
-2 % of the largest reading of each column. The uncertainty stated is for 95 %.
+Each case draws density, sign, mobilities, temperature, range of field, directions, offset, remanence and lag; the
+noise is 2 % of the largest reading of each column. The uncertainty stated is for 95 %.
 """
 
 from __future__ import annotations

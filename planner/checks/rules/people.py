@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from itertools import combinations
+from itertools import islice
 
 from planner.checks.plan_view import TRANSFER, PlanView, is_decision
 from planner.checks.registry import Rule, register
@@ -141,13 +141,22 @@ def people_present(view: PlanView) -> Iterator[Finding]:
         )
 
 
+def _overlapping(steps: list[Step]) -> Iterator[tuple[Step, Step]]:
+    """Pairs of steps that share time; the steps are in order of their start."""
+    for at, first in enumerate(steps):
+        for second in islice(steps, at + 1, None):
+            if second.start_s >= first.end_s:
+                break
+            yield first, second
+
+
 @ONE_PLACE.plan
 def one_place_at_a_time(view: PlanView) -> Iterator[Finding]:
     """Nobody is named in two steps that overlap."""
     named = [step for step in view.steps if step.people and step.seconds > 0]
-    for first, second in combinations(sorted(named, key=lambda step: step.start_s), 2):
+    for first, second in _overlapping(sorted(named, key=lambda step: step.start_s)):
         both = sorted(set(first.people) & set(second.people))
-        if both and second.start_s < first.end_s:
+        if both:
             yield ONE_PLACE.finding(
                 f"{', '.join(both)} would be at {first.label} and at {second.label} at once, "
                 f"{view.wall(second.start_s)}.",
