@@ -69,9 +69,9 @@ def _plan_problems(name: str, error: ValidationError) -> list[Problem]:
     first = details[0]
     if first["type"] == "json_invalid":
         return [Problem(name, "", "", f"not valid JSON: {first['ctx']['error']}")]
-    if other := next((detail for detail in details if detail["loc"] == ("format",)), None):
-        if other["type"] != "missing":
-            return [Problem(name, "format", shown(other["input"]), f"this program reads plan format {PLAN_FORMAT}")]
+    other = next((detail for detail in details if detail["loc"] == ("format",) and detail["type"] != "missing"), None)
+    if other is not None:
+        return [Problem(name, "format", shown(other["input"]), f"this program reads plan format {PLAN_FORMAT}")]
     if sum(detail["type"] == "missing" and len(detail["loc"]) == 1 for detail in details) > 3 or not first["loc"]:
         return [Problem(name, "", "", "is no plan made by this program")]
     places = [(".".join(str(part) for part in detail["loc"]), detail["msg"]) for detail in details[:5]]

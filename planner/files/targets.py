@@ -178,6 +178,11 @@ class Map(Target):
         _none_held(self, self.gate)
         return self
 
+    @property
+    def takes(self) -> int:
+        """One a rung."""
+        return self.repeats * (self.rungs or len(self.fields_T) or len(self.fillings))
+
 
 def _none_held(target: Target, *swept: str | None) -> None:
     for name in swept:
@@ -189,7 +194,7 @@ class OtherWork(Target):
     """A timed job of any other kind that needs the rig in a given state."""
 
     kind: Literal["other work"]
-    what: Annotated[str, Field(min_length=1, max_length=200)]
+    what: Annotated[str, Field(min_length=1, max_length=200, pattern=LINE)]
     duration_s: PositiveSeconds
     field_T: Tesla = 0.0
     people: Annotated[int, Field(ge=1, le=9)] = 1

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from planner.optimise.problem import Problem
-from planner.optimise.result import Evaluation, Result, TraceBlock, TraceStep, TraceWait
+from planner.optimise.result import Result, TraceBlock, TraceStep, TraceWait
 from planner.plan import HandOrder
 from planner.planning.compile import HELIUM, Compiled
 
@@ -13,7 +13,7 @@ from planner.planning.compile import HELIUM, Compiled
 def hand_orders(compiled: Compiled, result: Result) -> tuple[HandOrder, ...]:
     """How the plan compares with "as listed" and "sorted by field".
 
-    A hand order that cannot fit everything is compared with this plan's own order restricted to what it does fit.
+    A hand order that cannot fit everything is compared with this plan's own order less what the other leaves out.
     """
     from planner.optimise import follow
 
@@ -21,36 +21,39 @@ def hand_orders(compiled: Compiled, result: Result) -> tuple[HandOrder, ...]:
     mine = _takes(problem, result.order)
     if not mine:
         return ()
-    listed = sorted(mine)
     by_field = sorted(mine, key=lambda take: (_field_T(compiled, take), take))
     found = []
-    for name, wanted in (("as listed", listed), ("sorted by field", by_field)):
+    for name, wanted in (("as listed", sorted(mine)), ("sorted by field", by_field)):
         theirs = follow(problem, wanted, only=set(mine))
         if theirs.objective is None:
             continue
         shared = set(_takes(problem, theirs.order))
-        ours: Result | Evaluation = result
-        if shared != set(mine):
-            ours = follow(problem, [take for take in mine if take in shared], only=shared)
-        if ours.objective is None or set(_takes(problem, ours.order)) != shared:
+        ours = _restricted(problem, result, shared)
+        if ours is None:
             continue
         moving_s, litres = _spent(compiled, theirs.trace)
-        our_moving_s, our_litres = _spent(compiled, ours.trace)
+        our_moving_s, our_litres = _spent(compiled, ours)
         points = sum(int(problem.prize[take]) for take in shared)
-        found.append(
-            HandOrder(
-                name=name,
-                takes=len(shared),
-                points=points,
-                moving_s=moving_s,
-                litres=litres,
-                plan_takes=len(shared),
-                plan_points=points,
-                plan_moving_s=our_moving_s,
-                plan_litres=our_litres,
-            )
-        )
+        takes = sum(take < len(compiled.takes) for take in shared)
+        found.append(HandOrder(name, takes, points, moving_s, litres, takes, points, our_moving_s, our_litres))
     return tuple(found)
+
+
+def _restricted(problem: Problem, result: Result, shared: set[int]) -> tuple[TraceStep, ...] | None:
+    """The trace of this plan's order with only the shared takes, services that then pour too little left out too."""
+    from planner.optimise import evaluate
+
+    if shared == set(_takes(problem, result.order)):
+        return result.trace
+    order = [node for node in result.order if set(problem.covers[node]) <= shared]
+    while True:
+        read = evaluate(problem, order)
+        if read.objective is not None:
+            return read.trace
+        stuck = read.obstacle
+        if stuck is None or stuck.position >= len(order) or problem.covers[order[stuck.position]]:
+            return None
+        del order[stuck.position]
 
 
 def _takes(problem: Problem, order: Sequence[int]) -> list[int]:
