@@ -2,14 +2,16 @@
 
 from __future__ import annotations
 
-import os
+import math
 import signal
 import sys
+import tempfile
 import threading
 from collections.abc import Iterator
 from contextlib import contextmanager
 from pathlib import Path
 from types import FrameType
+from typing import Any
 
 import click
 
@@ -18,12 +20,23 @@ from planner.cli.sheet import write
 from planner.errors import InputError, Problem
 
 
+class _Seconds(click.FloatRange):
+    """A length of time within bounds; not-a-number lies within none."""
+
+    def convert(self, value: Any, param: click.Parameter | None, ctx: click.Context | None) -> float:
+        """Read the text."""
+        seconds = float(super().convert(value, param, ctx))
+        if math.isnan(seconds):
+            self.fail(f"{value} is not in the range {self.min}<=x<={self.max}.", param, ctx)
+        return seconds
+
+
 @click.command()
 @click.argument("week", type=click.Path(path_type=Path))
 @click.option(
     "-o", "--output", "folder", type=click.Path(path_type=Path, file_okay=False), help="Write the sheets here."
 )
-@click.option("--seconds", type=click.FloatRange(0.1, 86400), default=30.0, show_default=True, help="Time to search.")
+@click.option("--seconds", type=_Seconds(0.1, 86400), default=30.0, show_default=True, help="Time to search.")
 @click.option("--seed", type=click.IntRange(0, 2**31 - 1), default=0, show_default=True, help="Start of the search.")
 @click.option("--reproducible", is_flag=True, help="Stop on a count of work, not on the clock: same seed, same plan.")
 @click.option("--json", "as_json", is_flag=True, help="Print the plan's numbers as JSON.")
@@ -53,11 +66,11 @@ def _can_be_written(folder: Path) -> None:
     """Raise InputError, before a search and not after it, where a folder cannot be made or written into."""
     try:
         there = next(path for path in (folder, *folder.absolute().parents) if path.exists())
-        usable = there.is_dir() and os.access(there, os.W_OK | os.X_OK)
+        with tempfile.TemporaryFile(dir=there):
+            return
     except (OSError, ValueError):
-        usable = False
-    if not usable:
-        raise InputError([Problem(str(folder)[:200], "", "", "expected a folder that can be written into")])
+        wrong = Problem(str(folder)[:200], "", "", "expected a folder that can be written into")
+    raise InputError([wrong])
 
 
 @contextmanager

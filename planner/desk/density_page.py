@@ -25,6 +25,9 @@ COVERAGE = 2.0
 APART = 3.0
 """Standard deviations by which two densities must differ to be said to disagree."""
 
+SMALLEST_APART = 0.01
+"""Share by which they must differ besides: current and gain are seldom known better (common practice, no source)."""
+
 MOST_POINTS = 4000
 """Longer traces are averaged down to this: more points would only cost time."""
 
@@ -173,7 +176,12 @@ def _wave_value(fit: OscillationFit, degeneracy: int, sign: float) -> DensityVal
 
 def _agree(one: DensityValue, other: DensityValue) -> bool:
     apart = abs(one.density_per_m2 - other.density_per_m2)
-    return apart <= APART / COVERAGE * float(np.hypot(one.uncertainty_per_m2, other.uncertainty_per_m2))
+    return _sigmas_apart(one, other) <= APART or apart <= SMALLEST_APART * abs(one.density_per_m2)
+
+
+def _sigmas_apart(one: DensityValue, other: DensityValue) -> float:
+    sigma = float(np.hypot(one.uncertainty_per_m2, other.uncertainty_per_m2)) / COVERAGE
+    return abs(one.density_per_m2 - other.density_per_m2) / max(sigma, 1e-12 * abs(one.density_per_m2))
 
 
 def _best(hall: DensityValue | None, waves: DensityValue | None, agree: bool | None) -> DensityValue:
@@ -187,7 +195,9 @@ def _best(hall: DensityValue | None, waves: DensityValue | None, agree: bool | N
             1.0 / max(value.uncertainty_per_m2, 1e-12 * abs(value.density_per_m2)) ** 2 for value in (hall, waves)
         ]
         mean = (weights[0] * hall.density_per_m2 + weights[1] * waves.density_per_m2) / sum(weights)
-        return DensityValue(mean, 1.0 / float(np.sqrt(sum(weights))))
+        # Two that lie further apart than their scatter explains leave the mean so much less certain.
+        wider = max(1.0, _sigmas_apart(hall, waves) / COVERAGE)
+        return DensityValue(mean, wider / float(np.sqrt(sum(weights))))
     return hall if _miscounted(hall, waves) else waves
 
 

@@ -212,7 +212,7 @@ def _candidates(layer: Layer, tilt_rad: float) -> list[_Candidate]:
     fillings = np.array([float(each) for each in known])
     field = np.asarray(total_T(field_for_filling_T(layer.now_per_m2, fillings), tilt_rad))
     ends = field_interval_T(layer.now_per_m2, layer.uncertainty_per_m2, fillings)
-    furthest = np.max(np.abs([total_T(end, tilt_rad) for end in ends]), axis=0)
+    furthest = np.max(np.abs([np.asarray(total_T(end, tilt_rad)) for end in ends]), axis=0)
     return [_Candidate(*each) for each in zip(known, field.tolist(), furthest.tolist(), strict=True)]
 
 

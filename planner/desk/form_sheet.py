@@ -40,7 +40,7 @@ class SheetForm:
         label = "▶ write the review copy" if self.review else "▶ write the sheet"
         review = "marked on every page as not to be run; written whatever the checks say"
         return [
-            FormRow("folder", "folder", str(self.folder), str(self.folder), help="made if it is not there"),
+            FormRow("folder", "folder", self._folder(), self._folder(), help="beside the week file, or a whole path"),
             *formats,
             FormRow("review", "review copy", _said(self.review), _said(self.review), review, choices=yes_no),
             FormRow(WRITE, label, "", "", self._stands(), act=True),
@@ -81,6 +81,11 @@ class SheetForm:
             return Explained(False, self.told[1])
         self.told = ("Written:", *(str(path) for path in self.written))
         return Explained(True, f"wrote {len(self.written)} files to {self.folder}")
+
+    def _folder(self) -> str:
+        """The folder from the week file's on, where it lies in it."""
+        beside = self.session.document.week_path.parent
+        return str(self.folder.relative_to(beside) if self.folder.is_relative_to(beside) else self.folder)
 
     def _stands(self) -> str:
         if self.session.plan is None:

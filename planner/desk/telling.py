@@ -8,7 +8,8 @@ from planner.clock import Clock
 from planner.desk.wording import clean, day_time, duration, kelvin, rounded, tesla
 from planner.files import Rig
 from planner.files.level import level_at
-from planner.plan import CoilMode, Finding, Leg, Plan, State, Step, StepKind
+from planner.plan import CoilMode, Finding, Leg, Plan, Score, State, Step, StepKind
+from planner.planning import Progress
 from planner.runsheet.levels import floor_of
 
 
@@ -143,3 +144,34 @@ def finding_words(finding: Finding, clock: Clock | None) -> str:
     about = f" · {clean(finding.subject)}" if finding.subject else ""
     mend = f" Mend: {clean(finding.mend)}." if finding.mend else ""
     return f"{clean(finding.rule)}{about}{when}: {clean(finding.text)}" + (f" ({numbers})" if numbers else "") + mend
+
+
+def progress_words(progress: Progress | None, elapsed_s: float) -> str:
+    """A running solve in one short line: seconds, best so far, proven bound, gap."""
+    if progress is None:
+        return f"{elapsed_s:.0f} s · looking for a first plan"
+    if progress.best_points is None:
+        most = "" if progress.points_bound is None else f", at most {progress.points_bound} points"
+        return f"{elapsed_s:.0f} s · no plan yet{most}"
+    return f"{elapsed_s:.0f} s · " + _worth(
+        progress.best_points, progress.points_bound, progress.best_cost_h, progress.cost_bound_h, progress.gap
+    )
+
+
+def score_words(score: Score) -> str:
+    """What a plan is worth, as `progress_words` says it."""
+    worth = _worth(score.points, score.points_bound, score.cost_h, score.cost_bound_h, score.gap)
+    return f"{worth}, proven best" if score.proven else worth
+
+
+def _worth(
+    points: int, points_bound: int | None, cost_h: float | None, cost_bound_h: float | None, gap: float | None
+) -> str:
+    parts = [f"best {points}{'' if points_bound is None else f'/{points_bound}'} points"]
+    if cost_h is not None:
+        parts[0] += f", {cost_h:.2f} h"
+    if cost_bound_h is not None:
+        parts.append(f"bound {cost_bound_h:.2f} h")
+    if gap is not None:
+        parts.append(f"gap {100 * gap:.1f} %")
+    return " · ".join(parts)

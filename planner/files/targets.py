@@ -133,6 +133,8 @@ class GateSweep(AtOneField):
             raise ValueError("a second gate needs `second_gate`, `second_sweep` and `second_points`")
         if self.second_gate == self.gate:
             raise ValueError("second_gate: must be another gate")
+        if self.points * (self.second_points or 1) > MOST_POINTS:
+            raise ValueError(f"second_points: expected at most {MOST_POINTS} points in all")
         _none_held(self, self.gate, self.second_gate)
         return self
 

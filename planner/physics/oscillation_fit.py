@@ -137,7 +137,7 @@ def _coarse(data: _Points, step_T: float, expected_T: float | None) -> float:
     """The frequency that explains most of what a smooth background leaves."""
     largest = float(np.abs(data.field).max())
     if expected_T is None:
-        # Four cycles must fit below the largest field; and four points into each of them.
+        # Below, the trace ends before its third cycle; above, a cycle at the largest field has fewer than four points.
         ends = 0.5 * largest, min(largest**2 / (_POINTS_PER_CYCLE * step_T), 60.0 * largest)
     else:
         ends = expected_T / 6.0, expected_T * 4.0

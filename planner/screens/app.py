@@ -73,20 +73,22 @@ class FridgeweekApp(App[None]):
         """The lines at the edges, and the places between them."""
         yield TopLine(markup=False)
         yield PlacesLine(markup=False)
-        yield from self._compose_places()
+        yield self._places()
         yield SolveLine(markup=False)
         yield KeysLine(markup=False)
 
-    def _compose_places(self) -> ComposeResult:
+    def _places(self) -> ContentSwitcher:
         session = self.session
-        with ContentSwitcher(initial=self.place):
-            yield OutlinePlace(session, "week", "week", without=("samples",))
-            yield OutlinePlace(session, "rig", "rig")
-            yield OutlinePlace(session, "week", "samples", only="samples")
-            yield TargetsPlace(session, "targets")
-            yield PlanPlace(session, "plan")
-            yield FindingsPlace(session, "findings")
-            yield SheetPlace(session, "sheet")
+        return ContentSwitcher(
+            OutlinePlace(session, "week", "week", without=("samples",)),
+            OutlinePlace(session, "rig", "rig"),
+            OutlinePlace(session, "week", "samples", only="samples"),
+            TargetsPlace(session, "targets"),
+            PlanPlace(session, "plan"),
+            FindingsPlace(session, "findings"),
+            SheetPlace(session, "sheet"),
+            initial="targets",
+        )
 
     def on_mount(self) -> None:
         """Show everything; offer unsaved work of an earlier sitting."""
@@ -390,10 +392,9 @@ class FridgeweekApp(App[None]):
             return
         self.session.leave()
         self.session = Session(document, self.session.remembered, self.session.effort)
-        await self.query_one(ContentSwitcher).remove()
-        with self.app.batch_update():
-            places = list(self._compose_places())
-            await self.mount(*places, after=self.query_one(PlacesLine))
+        with self.batch_update():
+            await self.query_one(ContentSwitcher).remove()
+            await self.mount(self._places(), after=self.query_one(PlacesLine))
         self.go("targets")
         self._offer_draft()
 

@@ -8,16 +8,18 @@ from textual.widgets import Static
 
 from planner.desk.session import Session
 from planner.desk.solving import Snapshot, SolveState
+from planner.desk.telling import progress_words, score_words
 from planner.desk.wording import clean
-from planner.report.progress import progress_line
 from planner.screens.actions import PLACE_KEYS, PLACES, TITLES, here, shown_key
 from planner.screens.looks import message_style
+
+_ONE_LINE = "{name} {{ height: 1; background: {back}; padding: 0 1; text-wrap: nowrap; text-overflow: ellipsis; }}"
 
 
 class TopLine(Static):
     """The week, its files, and whether all is saved."""
 
-    DEFAULT_CSS = "TopLine { height: 1; background: $panel; padding: 0 1; }"
+    DEFAULT_CSS = _ONE_LINE.format(name="TopLine", back="$panel")
 
     def show(self, session: Session) -> None:
         """Say what is open."""
@@ -41,7 +43,7 @@ class TopLine(Static):
 class PlacesLine(Static):
     """The places, with their keys."""
 
-    DEFAULT_CSS = "PlacesLine { height: 1; background: $surface; padding: 0 1; }"
+    DEFAULT_CSS = _ONE_LINE.format(name="PlacesLine", back="$surface")
 
     def show(self, place: str) -> None:
         """Mark the place one is in."""
@@ -66,7 +68,7 @@ class PlacesLine(Static):
 class SolveLine(Static):
     """How the solve stands; afterwards, what the plan is worth."""
 
-    DEFAULT_CSS = "SolveLine { height: 1; background: $surface; padding: 0 1; }"
+    DEFAULT_CSS = _ONE_LINE.format(name="SolveLine", back="$surface")
 
     HELP = (
         "While a solve runs: its seconds, the points of the best plan so far and the most any plan can have, its "
@@ -81,20 +83,16 @@ class SolveLine(Static):
         if snapshot is not None and running:
             word = "stopping" if snapshot.state is SolveState.STOPPING else "solving"
             text.append(f"{word} ", message_style(theme, "warn"))
-            if snapshot.progress is None:
-                text.append(f"{snapshot.elapsed_s:.0f} s · looking for a first plan")
-            else:
-                text.append(progress_line(snapshot.progress, snapshot.elapsed_s))
+            text.append(progress_words(snapshot.progress, snapshot.elapsed_s))
             text.append(" · F10 stops", message_style(theme, "quiet"))
         elif message:
             text.append(message)
         elif session.plan is not None:
-            score = session.plan.score
-            text.append(f"plan: {score.points} of at most {score.points_bound} points · cost {score.cost_h:.2f} h, ")
-            text.append("proven best" if score.proven else f"at least {score.cost_bound_h:.2f} h")
-            text.append("" if score.proven else f" · gap {100 * score.gap:.1f} %")
-            if not session.plan_is_current:
-                text.append(" · older than the last edits", message_style(theme, "warn"))
+            if session.plan_is_current:
+                text.append("plan · ")
+            else:
+                text.append("plan, older than the last edits · ", message_style(theme, "warn"))
+            text.append(score_words(session.plan.score))
             text.append(_counted(session), message_style(theme, "quiet"))
         else:
             text.append("no plan yet", message_style(theme, "quiet"))
@@ -114,7 +112,7 @@ def _counted(session: Session) -> str:
 class KeysLine(Static):
     """The keys that work where one is."""
 
-    DEFAULT_CSS = "KeysLine { height: 1; background: $panel; padding: 0 1; }"
+    DEFAULT_CSS = _ONE_LINE.format(name="KeysLine", back="$panel")
 
     def show(self, place: str, mode: str, *, solving: bool) -> None:
         """Say which keys work; ``mode`` is "typing", "lines" (of a form) or "" elsewhere."""

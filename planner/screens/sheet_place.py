@@ -20,8 +20,8 @@ class SheetPlace(Vertical):
     """Write the run sheet for whoever is on shift."""
 
     DEFAULT_CSS = """
-    SheetPlace .cautions { height: auto; max-height: 7; padding: 0 1; background: $panel; }
-    SheetPlace FieldSheet { height: 10; }
+    SheetPlace .cautions { height: auto; max-height: 8; padding: 0 1; background: $panel; }
+    SheetPlace FieldSheet { height: 9; }
     SheetPlace .came { height: 1fr; padding: 0 1; border-top: tall $panel; }
     """
 

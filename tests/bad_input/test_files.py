@@ -143,6 +143,11 @@ TARGETS: list[tuple[Changes, Changes, str]] = [
     (GATES, {}, "give a dwell a point, or a lock-in"),
     (GATES, {"dwell": "1 s", "points": 1}, "expected at least 2"),
     (GATES, {"dwell": "1 s", "points": 10**6}, "expected at most 100000"),
+    (
+        GATES,
+        {"dwell": "1 s", "points": 10**5, "second_gate": "back", "second_sweep": "0 V to 1 V", "second_points": 10**4},
+        "10000000 points in all",
+    ),
     (GATES, {"dwell": "1 s", "second_gate": "back"}, "needs `second_gate`, `second_sweep` and `second_points`"),
     (MAP, {"dwell": "1 s", "points": 5, "rungs": REMOVED}, "`rungs` goes with a range"),
     (MAP, {"dwell": "1 s", "points": 5, "rungs": 1000, "repeats": 100}, "100000 takes: a week holds 2000 at most"),

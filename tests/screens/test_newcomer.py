@@ -41,7 +41,7 @@ async def _path(folder: Path) -> None:
         await user.keys("s")
         await user.solved()
         assert session.plan is not None
-        assert "plan: " in user.text()
+        assert "plan · best" in user.text()
         done = {step.target for step in session.plan.steps}
         assert {row["name"] for row in targets} <= done
 

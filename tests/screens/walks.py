@@ -3,8 +3,8 @@
 ``python -m tests.screens.walks [COUNT] [FIRST_SEED]`` walks 500 times by default and prints how many keys were pressed,
 how many edits were made, and the seconds it took. The tests walk a few times.
 
-After each walk: nothing was raised; unsaved work is kept word for word; undo leads back to the very text that was opened,
-redo to the very text that was left.
+After each walk: nothing was raised; unsaved work is kept word for word; undo leads back to the very text that was
+opened, redo to the very text that was left.
 """
 
 from __future__ import annotations
@@ -27,7 +27,21 @@ MOVES = ("up", "down", "left", "right", "home", "end", "tab", "shift+tab", "page
 PLACES = ("f2", "f3", "f4", "f5", "f6", "f7", "f8")
 EDITS = ("a", "c", "d", "n", "space", "backspace", "shift+up", "shift+down", "u", "r", "ctrl+s", "ctrl+t")
 PLAN = ("s", "x", "plus", "minus", "0", "f", "g", "f1", "ctrl+p", "ctrl+o")
-TEXTS = ("12 T", "1/3", "0.2 T/min", "50 mK", "base", "20 min", "2", "1.1e11 cm^-2", "yes", "9 T", "x y", "-1 T to 1 T", "é")
+TEXTS = (
+    "12 T",
+    "1/3",
+    "0.2 T/min",
+    "50 mK",
+    "base",
+    "20 min",
+    "2",
+    "1.1e11 cm^-2",
+    "yes",
+    "9 T",
+    "x y",
+    "-1 T to 1 T",
+    "é",
+)
 
 
 @dataclass(frozen=True, slots=True)
@@ -57,8 +71,12 @@ async def _walk(seed: int, folder: Path, keys: int) -> Walked:
                 pressed.append(key)
                 await _press(user, key)
             edits += user.session.document.texts != before
+            if user.session is not session:  # a file was opened
+                session = user.session
+                start = session.document.texts
+                assert session.document.undoable == 0
         await _come_home(user)
-        document = user.session.document
+        document = session.document
         last = document.texts
         draft = session.remembered.draft(document.week_path)
         if document.changed:
@@ -66,11 +84,13 @@ async def _walk(seed: int, folder: Path, keys: int) -> Walked:
             assert draft.texts == last, pressed
         else:
             assert draft is None, pressed
-        while session.undo():
-            pass
+        steps = document.undoable
+        for _ in range(steps):
+            assert session.undo(), pressed
+        assert not session.undo(), pressed
         assert document.texts == start, pressed
-        while session.redo():
-            pass
+        for _ in range(steps):
+            assert session.redo(), pressed
         assert document.texts == last, pressed
         await user.keys("f5")
         assert "[Targets]" in user.text(), pressed

@@ -1,0 +1,101 @@
+"""Files made to be too much: refused with few words, in seconds of processor time and well under a gigabyte.
+
+Each runs in a process of its own, whose processor time and largest resident size the system reports.
+"""
+
+from __future__ import annotations
+
+import io
+import os
+import subprocess
+import sys
+import zipfile
+from collections.abc import Callable
+from pathlib import Path
+
+import pytest
+
+from tests.bad_input.test_sheets import PLAIN, SHEET
+from tests.builders import rig_text, week_text
+from tests.cli.run import contents, put
+
+MOST_S, MOST_BYTES = 5.0, 1_000_000_000
+ROW = '[[targets]]\nname = "{n}"\nkind = "hold"\nsample = "S1"\nfield = "1 T"\nduration = "1 h"\n{more}'
+
+
+def base() -> str:
+    return week_text({"samples.0.gates": []}).replace('"targets" = []\n', "")
+
+
+def targets(count: int, more: str = "") -> str:
+    return base() + "".join(ROW.format(n=f"target {n}", more=more.format(n=n)) for n in range(count))
+
+
+def bomb() -> bytes:
+    """A workbook of a few kilobytes that unpacks to 100 MB."""
+    out = io.BytesIO(PLAIN)
+    with zipfile.ZipFile(out, "a", zipfile.ZIP_DEFLATED) as book:
+        book.writestr("xl/media/image1.png", b"\0" * 100_000_000)
+    return out.getvalue()
+
+
+def wide() -> bytes:
+    """A workbook whose only row claims a cell in the last column, and whose sheet claims to be full."""
+    out = io.BytesIO()
+    cell = b'<row r="1"><c r="XFD1" t="inlineStr"><is><t>x</t></is></c>'
+    with zipfile.ZipFile(io.BytesIO(PLAIN)) as old, zipfile.ZipFile(out, "w", zipfile.ZIP_DEFLATED) as new:
+        for part in old.namelist():
+            data = old.read(part)
+            if part == SHEET:
+                data = data.replace(b'<row r="1">', cell).replace(b'ref="A1:E2"', b'ref="A1:XFD1048576"')
+            new.writestr(part, data)
+    return out.getvalue()
+
+
+def csv_rows(count: int, tail: str = "") -> str:
+    return "name,kind,sample,field (T),duration (h),after\n" + "".join(
+        f"N{n},hold,S1,1,1,{tail.format(n=n)}\n" for n in range(count)
+    )
+
+
+HEAVY: list[tuple[str, Callable[[], dict[str, str | bytes]], tuple[str, ...], str]] = [
+    ("10 MB week", lambda: {"week": base() + "# x\n" * 2_500_000}, ("check", "week.toml"), "expected at most 1000000 bytes"),
+    ("10 MB rig", lambda: {"rig": b"#" * 10_000_000}, ("check", "week.toml"), "expected at most 1000000 bytes"),
+    ("10,000 targets", lambda: {"week": targets(10_000)}, ("check", "week.toml"), "expected at most"),
+    ("5,000 targets", lambda: {"week": targets(5_000)}, ("check", "week.toml"), "a week holds 2000 at most"),
+    ("no such names", lambda: {"week": targets(2_000, 'after = ["targt {n}"]\n')}, ("check", "week.toml"), "of this file"),
+    ("unknown keys", lambda: {"week": base() + "\n".join(f"x{n} = 1" for n in range(80_000))}, ("check", "week.toml"), "rows"),
+    ("wrong units", lambda: {"week": targets(2_000, 'decide = "{n} m"\n')}, ("check", "week.toml"), "minutes are written min"),
+    ("tables in tables", lambda: {"week": base() + "".join(f"[a{n}.b.c.d]\n" for n in range(60_000))}, ("check", "week.toml"), "rows"),
+    ("spaces", lambda: {"week": targets(180, 'excitation = "' + " " * 4900 + '\\u0007"\n')}, ("check", "week.toml"), "at most 200"),
+    ("slots", lambda: {"week": week_text({"users.0.slots": [{"from": "Tue 08:00", "to": "Tue 09:00"}] * 4900})}, ("check", "week.toml"), "at most 100 of them"),
+    ("10 MB CSV", lambda: {"list.csv": "x" * 10_000_000}, ("targets", "list.csv"), "expected at most 5000000 bytes"),
+    ("rows without end", lambda: {"list.csv": csv_rows(100_000)}, ("targets", "list.csv"), "expected at most 10000 rows"),
+    ("10,000 rows", lambda: {"list.csv": csv_rows(9_990)}, ("targets", "list.csv", "--into", "week.toml"), "takes: a week holds"),
+    ("bad rows", lambda: {"list.csv": csv_rows(2_000, "Z{n}")}, ("targets", "list.csv", "--into", "week.toml"), "row 2001, after"),
+    ("unpacks to 100 MB", lambda: {"list.xlsx": bomb()}, ("targets", "list.xlsx"), "when unpacked"),
+    ("claims to be full", lambda: {"list.xlsx": wide()}, ("targets", "list.xlsx"), "at most 200 columns"),
+    ("25 MB plan", lambda: {"plan.json": b"[" + b"1," * 12_500_000 + b"1]"}, ("check", "plan.json"), "expected at most 20000000 bytes"),
+    ("19 MB of no plan", lambda: {"plan.json": b'{"steps": [' + b"{}," * 6_300_000 + b"{}]}"}, ("check", "plan.json"), "no plan made by this"),
+]  # fmt: skip
+
+
+@pytest.mark.parametrize(("files", "line", "says"), [row[1:] for row in HEAVY], ids=[row[0] for row in HEAVY])
+def test_too_much(tmp_path: Path, files: Callable[[], dict[str, str | bytes]], line: tuple[str, ...], says: str) -> None:
+    put(tmp_path, **{"week": week_text(), "rig": rig_text(), **files()})
+    before = contents(tmp_path)
+    out, err = tmp_path.parent / "out.txt", tmp_path.parent / "err.txt"
+    with out.open("wb") as to_out, err.open("wb") as to_err:
+        command = [sys.executable, "-m", "planner", *line]
+        here = str(Path(__file__).parents[2])
+        child = subprocess.Popen(command, cwd=tmp_path, stdout=to_out, stderr=to_err, env={**os.environ, "PYTHONPATH": here})
+        _, ended, used = os.wait4(child.pid, 0)
+        child.returncode = os.waitstatus_to_exitcode(ended)
+    said = err.read_text(encoding="utf-8")
+    assert child.returncode == 2, said[:2000]
+    assert out.read_bytes() == b""
+    assert says in said
+    assert "Traceback" not in said
+    assert contents(tmp_path) == before
+    assert used.ru_utime + used.ru_stime < MOST_S
+    assert used.ru_maxrss * 1024 < MOST_BYTES
