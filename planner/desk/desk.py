@@ -18,6 +18,8 @@ from planner.plan.sound import unsound
 from planner.planning import Progress
 
 LARGEST_PLAN = 20_000_000
+MOST_VALUES = 1_000_000
+"""Objects, lists or commas in a plan's JSON, counted before it is read: reading takes up to 600 bytes for each."""
 
 open_week = read_week
 
@@ -54,6 +56,8 @@ def open_plan(path: Path | str) -> Plan:
         raise InputError([Problem(str(path)[:200], "", "", "there is no such file")]) from None
     except (OSError, ValueError) as error:
         raise InputError([Problem(path.name[:200], "", "", f"cannot be read: {str(error)[:200]}")]) from None
+    if any(text.count(sign) > MOST_VALUES for sign in (b"{", b"[", b",")):
+        raise InputError([Problem(path.name, "", "", "is no plan made by this program: it holds too many values")])
     try:
         plan = Plan.from_json(text)
     except ValidationError as error:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import cache
 from typing import Any
 
 from pydantic import ValidationError
@@ -65,7 +66,7 @@ def field_meant(rig: Rig, sample: Any, target: dict[str, Any], key: str, written
     carrier = _carrier(sample, target)
     free = str(target.get("gate", "")) if target.get("kind") in _SWEPT else ""
     asks = [
-        field_of(carrier, _sample(sample) if key == "filling" else _NOBODY, *_asked(key, end), free=free)
+        field_of(carrier, _sample(sample) if key == "filling" else _nobody(), *_asked(key, end), free=free)
         for end in ends
     ]
     text = " to ".join(_said(ask) for ask in asks)
@@ -104,7 +105,10 @@ def _said(ask: FieldAsk) -> str:
     return f"{ask.field_T:.3f} T ({ask.low_T:.3f} … {ask.high_T:.3f})".replace("-", "−")
 
 
-_NOBODY = Sample.model_validate({"name": "any", "user": "any", "density": "1e11 cm^-2"})
+@cache
+def _nobody() -> Sample:
+    """The sample of a field in tesla, which needs none."""
+    return Sample.model_validate({"name": "any", "user": "any", "density": "1e11 cm^-2"})
 
 
 def _sample(data: Any) -> Sample:

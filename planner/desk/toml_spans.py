@@ -88,9 +88,10 @@ class Scan:
                     return found
         return None
 
-    def line(self, parts: Parts) -> Line | None:
-        """The line whose key is exactly this place."""
-        return next((one for block in self.blocks for one in block.lines if block.parts + one.keys == parts), None)
+    def lines(self, parts: Parts) -> list[Line]:
+        """The lines at this place or below it, in the order of the text: several where keys are dotted."""
+        depth = len(parts)
+        return [one for block in self.blocks for one in block.lines if (*block.parts, *one.keys)[:depth] == parts]
 
     def block(self, parts: Parts) -> Block | None:
         """The table with a header of its own at this place; the first block for no parts."""

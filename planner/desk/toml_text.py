@@ -12,6 +12,7 @@ from typing import Any
 
 import tomlkit
 
+from planner.desk.place import value_at
 from planner.desk.toml_spans import Block, Parts, Scan, Value
 from planner.errors import PlannerError
 
@@ -45,26 +46,21 @@ def remove(text: str, parts: Parts) -> str:
     """The text without a key, a table or a row of a list."""
 
     def on_plain(data: Any) -> None:
-        for part in parts[:-1]:
-            data = data[part]
-        del data[parts[-1]]
-        if isinstance(data, list) and not data and scan.inside(parts):
-            on_list(parts[:-1])
+        del value_at(data, parts[:-1])[parts[-1]]
 
-    def on_list(parts: Parts) -> None:
-        emptied.append(parts)
-
-    scan, emptied = Scan(text), list[Parts]()
-    edited = _without(text, scan, parts)
-
-    def both(data: Any) -> None:
+    def with_emptied(data: Any) -> None:
+        """A list of [[rows]] goes with its last row, a table of dotted keys with its last key."""
         on_plain(data)
-        for place in emptied:  # the last [[row]] takes its list with it
-            for part in place[:-1]:
-                data = data[part]
-            del data[place[-1]]
+        holder = parts[:-1]
+        while holder and not value_at(data, holder):
+            del value_at(data, holder[:-1])[holder[-1]]
+            holder = holder[:-1]
 
-    return _confirmed(text, edited, both)
+    edited = _without(text, Scan(text), parts)
+    try:
+        return _confirmed(text, edited, on_plain)
+    except CannotEditError:
+        return _confirmed(text, edited, with_emptied)
 
 
 def add_row(text: str, parts: Parts, at: int, row: dict[str, Any]) -> str:
@@ -234,8 +230,11 @@ def _without(text: str, scan: Scan, parts: Parts) -> str:
         for block in reversed(blocks):
             text = text[: block.start] + text[block.end :]
         return text
-    if (line := scan.line(parts)) is not None:
-        return text[: line.start] + text[line.end :]
+    lines = scan.lines(parts)
+    if lines:
+        for line in reversed(lines):
+            text = text[: line.start] + text[line.end :]
+        return text
     holder = scan.find(parts[:-1])
     if holder is None:
         raise CannotEditError("There is nothing of that name to take out.")

@@ -5,7 +5,9 @@ from __future__ import annotations
 from dataclasses import dataclass
 from datetime import datetime
 from functools import cache
-from typing import TYPE_CHECKING, Literal
+from typing import TYPE_CHECKING, Annotated, Literal
+
+from pydantic import FailFast
 
 from planner.clock import Clock, zone
 from planner.plan.finding import Finding
@@ -92,12 +94,12 @@ class Plan:
     zone: str
     start: datetime
     end: datetime
-    sources: tuple[Source, ...]
-    steps: tuple[Step, ...]
-    left_out: tuple[LeftOut, ...]
+    sources: Annotated[tuple[Source, ...], FailFast()]
+    steps: Annotated[tuple[Step, ...], FailFast()]
+    left_out: Annotated[tuple[LeftOut, ...], FailFast()]
     score: Score
-    compared: tuple[HandOrder, ...] = ()
-    findings: tuple[Finding, ...] = ()
+    compared: Annotated[tuple[HandOrder, ...], FailFast()] = ()
+    findings: Annotated[tuple[Finding, ...], FailFast()] = ()
     recovery: bool = False
     made_by: str = ""
     format: Literal[1] = PLAN_FORMAT

@@ -1,23 +1,24 @@
 """Files made to be too much: refused with few words, in seconds of processor time and well under a gigabyte.
 
-Each runs in a process of its own, whose processor time and largest resident size the system reports.
+All run in one process of their own, which reports the processor time of each and its largest resident size so far.
 """
 
 from __future__ import annotations
 
 import io
-import os
+import json
 import subprocess
 import sys
 import zipfile
 from collections.abc import Callable
 from pathlib import Path
+from typing import Any
 
 import pytest
 
 from tests.bad_input.test_sheets import PLAIN, SHEET
 from tests.builders import rig_text, week_text
-from tests.cli.run import contents, put
+from tests.cli.run import put
 
 MOST_S, MOST_BYTES = 5.0, 1_000_000_000
 ROW = '[[targets]]\nname = "{n}"\nkind = "hold"\nsample = "S1"\nfield = "1 T"\nduration = "1 h"\n{more}'
@@ -42,12 +43,12 @@ def bomb() -> bytes:
 def wide() -> bytes:
     """A workbook whose only row claims a cell in the last column, and whose sheet claims to be full."""
     out = io.BytesIO()
-    cell = b'<row r="1"><c r="XFD1" t="inlineStr"><is><t>x</t></is></c>'
+    cell = b'<c r="XFD1" t="inlineStr"><is><t>x</t></is></c></row>'
     with zipfile.ZipFile(io.BytesIO(PLAIN)) as old, zipfile.ZipFile(out, "w", zipfile.ZIP_DEFLATED) as new:
         for part in old.namelist():
             data = old.read(part)
             if part == SHEET:
-                data = data.replace(b'<row r="1">', cell).replace(b'ref="A1:E2"', b'ref="A1:XFD1048576"')
+                data = data.replace(b"</row>", cell, 1).replace(b'ref="A1:E2"', b'ref="A1:XFD1048576"')
             new.writestr(part, data)
     return out.getvalue()
 
@@ -71,7 +72,7 @@ HEAVY: list[tuple[str, Callable[[], dict[str, str | bytes]], tuple[str, ...], st
     ("slots", lambda: {"week": week_text({"users.0.slots": [{"from": "Tue 08:00", "to": "Tue 09:00"}] * 4900})}, ("check", "week.toml"), "at most 100 of them"),
     ("10 MB CSV", lambda: {"list.csv": "x" * 10_000_000}, ("targets", "list.csv"), "expected at most 5000000 bytes"),
     ("rows without end", lambda: {"list.csv": csv_rows(100_000)}, ("targets", "list.csv"), "expected at most 10000 rows"),
-    ("10,000 rows", lambda: {"list.csv": csv_rows(9_990)}, ("targets", "list.csv", "--into", "week.toml"), "takes: a week holds"),
+    ("10,000 rows", lambda: {"list.csv": csv_rows(9_990)}, ("targets", "list.csv", "--into", "week.toml"), "a week holds 2000"),
     ("bad rows", lambda: {"list.csv": csv_rows(2_000, "Z{n}")}, ("targets", "list.csv", "--into", "week.toml"), "row 2001, after"),
     ("unpacks to 100 MB", lambda: {"list.xlsx": bomb()}, ("targets", "list.xlsx"), "when unpacked"),
     ("claims to be full", lambda: {"list.xlsx": wide()}, ("targets", "list.xlsx"), "at most 200 columns"),
@@ -80,22 +81,31 @@ HEAVY: list[tuple[str, Callable[[], dict[str, str | bytes]], tuple[str, ...], st
 ]  # fmt: skip
 
 
-@pytest.mark.parametrize(("files", "line", "says"), [row[1:] for row in HEAVY], ids=[row[0] for row in HEAVY])
-def test_too_much(tmp_path: Path, files: Callable[[], dict[str, str | bytes]], line: tuple[str, ...], says: str) -> None:
-    put(tmp_path, **{"week": week_text(), "rig": rig_text(), **files()})
-    before = contents(tmp_path)
-    out, err = tmp_path.parent / "out.txt", tmp_path.parent / "err.txt"
-    with out.open("wb") as to_out, err.open("wb") as to_err:
-        command = [sys.executable, "-m", "planner", *line]
-        here = str(Path(__file__).parents[2])
-        child = subprocess.Popen(command, cwd=tmp_path, stdout=to_out, stderr=to_err, env={**os.environ, "PYTHONPATH": here})
-        _, ended, used = os.wait4(child.pid, 0)
-        child.returncode = os.waitstatus_to_exitcode(ended)
-    said = err.read_text(encoding="utf-8")
-    assert child.returncode == 2, said[:2000]
-    assert out.read_bytes() == b""
-    assert says in said
-    assert "Traceback" not in said
-    assert contents(tmp_path) == before
-    assert used.ru_utime + used.ru_stime < MOST_S
-    assert used.ru_maxrss * 1024 < MOST_BYTES
+@pytest.fixture(scope="module")
+def report(tmp_path_factory: pytest.TempPathFactory) -> list[dict[str, Any]]:
+    """What became of every case, all run in one process."""
+    folder = tmp_path_factory.mktemp("heavy")
+    cases = []
+    for number, (_, files, line, _) in enumerate(HEAVY):
+        place = folder / str(number)
+        place.mkdir()
+        put(place, **{"week": week_text(), "rig": rig_text(), **files()})
+        cases.append((str(place), line))
+    (folder / "cases.json").write_text(json.dumps(cases), encoding="utf-8")
+    command = [sys.executable, "-m", "tests.bad_input.child", str(folder / "cases.json"), str(folder / "report.json")]
+    ended = subprocess.run(command, cwd=Path(__file__).parents[2], capture_output=True, text=True, check=False)
+    told: list[dict[str, Any]] = json.loads((folder / "report.json").read_text(encoding="utf-8"))
+    assert len(told) == len(HEAVY), f"ended with {ended.returncode} at {HEAVY[len(told)][0]}: {ended.stderr[-2000:]}"
+    return told
+
+
+@pytest.mark.parametrize("number", range(len(HEAVY)), ids=[row[0] for row in HEAVY])
+def test_too_much(report: list[dict[str, Any]], number: int) -> None:
+    told, says = report[number], HEAVY[number][3]
+    assert told["status"] == 2, told
+    assert told["out"] == ""
+    assert says in told["err"]
+    assert "Traceback" not in told["err"]
+    assert told["unchanged"]
+    assert told["seconds"] < MOST_S
+    assert told["bytes"] < MOST_BYTES

@@ -72,6 +72,7 @@ class Terminal:
         began = time.monotonic()
         while self.process.poll() is None and time.monotonic() - began < seconds:
             self.read(0.02)
+            time.sleep(0.005)
         return time.monotonic() - began
 
 
