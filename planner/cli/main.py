@@ -9,7 +9,7 @@ import click
 
 from planner.cli.check import check, schema
 from planner.cli.new import new
-from planner.cli.output import CAUTION, say_error
+from planner.cli.output import CAUTION, UNUSABLE, say, say_error
 from planner.cli.physics_commands import COMMANDS as PHYSICS_COMMANDS
 from planner.cli.plan import plan
 from planner.cli.sheet import sheet
@@ -25,6 +25,10 @@ class _Command(click.Group):
             return super().invoke(ctx)
         except PlannerError as error:
             sys.exit(say_error(error))
+        except KeyboardInterrupt:
+            say("")
+            say("Interrupted.")
+            sys.exit(UNUSABLE)
 
     def list_commands(self, ctx: click.Context) -> list[str]:  # noqa: ARG002 - click's own signature
         """In the order in which a week goes through them."""

@@ -156,12 +156,19 @@ def count(parts: Parts, ask: str, why: str, offer: int, least: int, most: int) -
         raise ValueError(f"expected a whole number from {least} to {most}")
 
     def holds(data: dict[str, Any]) -> str | None:
-        if not isinstance(value_at(data, parts[:-1]), dict):
-            return None
-        return str(len(value_at(data, parts) or ()))
+        return str(len(value_at(data, parts) or ())) if has_table(data, parts) else None
 
     whole = f"a whole number from {least} to {most}"
     return Question(parts, ask, why, str(offer), read, whole, puts=lambda number: {parts: Rows(number)}, holds=holds)
+
+
+def has_table(data: dict[str, Any], parts: Parts) -> bool:
+    """Whether a file has a say in a key: the table that may hold it is there, or may be left out as a whole."""
+    above = parts[:-2] if "lockin" in parts[-2:-1] else parts[:-1]
+    if isinstance(value_at(data, above), dict):
+        return True
+    model = Week if data.get("kind") == "week" else Rig
+    return len(parts) == 2 and isinstance(model.model_fields[str(parts[0])].default, Table)
 
 
 def choice(
@@ -321,7 +328,9 @@ class Asking:
         else:
             found = value_at(self._start, question.parts)
             text = (
-                LEAVE_OUT if found is None and question.optional and self._has_table(question.parts) else shown(found)
+                LEAVE_OUT
+                if found is None and question.optional and has_table(self._start, question.parts)
+                else shown(found)
             )
         try:
             value = question.value_of(text) if text else None
@@ -330,13 +339,6 @@ class Asking:
         if value is None:
             return question
         return replace(question, offer=text, mark="", kept=value if found is None else found)
-
-    def _has_table(self, parts: Parts) -> bool:
-        """Whether the start file says something of this kind: the table is there, or may be left out as a whole."""
-        if isinstance(value_at(self._start, parts[:-1]), dict):
-            return True
-        model = Week if self._start.get("kind") == "week" else Rig
-        return len(parts) == 2 and isinstance(model.model_fields[str(parts[0])].default, Table)
 
     def _next(self) -> Question | None:
         script = self._script()
@@ -362,6 +364,7 @@ def _told(problem: Problem, parts: Parts) -> str:
 def _put(data: dict[str, Any], parts: Parts, put: Any) -> None:
     """Put a value under its place; tables and rows on the way are made, a target of another kind begins anew."""
     table: Any = data
+    put = LEFT_OUT if isinstance(put, Rows) and not put.number else put
     for part, following in pairwise(parts):
         if isinstance(part, int):
             while len(table) <= part:
@@ -376,10 +379,7 @@ def _put(data: dict[str, Any], parts: Parts, put: Any) -> None:
         table.pop(last, None)
         return
     if isinstance(put, Rows):
-        if put.number:
-            del table.setdefault(last, [])[put.number :]
-        else:
-            table.pop(last, None)
+        del table.setdefault(last, [])[put.number :]
         return
     if last == "kind" and parts[0] == "targets" and table.get("kind", put) != put:
         table.clear()

@@ -6,6 +6,7 @@ Every offer is an invented value of ordinary size that the rig can do.
 from __future__ import annotations
 
 from collections.abc import Callable, Generator
+from dataclasses import replace
 from datetime import date, datetime, time, timedelta
 from typing import Any
 
@@ -153,16 +154,7 @@ def _present(rig: Rig) -> Script:
 
 def _needed(question: Question) -> Question:
     """The same question, not to be left out."""
-    return Question(
-        question.parts,
-        question.ask,
-        question.why,
-        question.offer,
-        question.read,
-        question.wanted,
-        mark=question.mark,
-        says=question.says,
-    )
+    return replace(question, optional=False)
 
 
 def _helium() -> Script:
@@ -218,14 +210,23 @@ def _sample(at: Parts, which: str, row: int, users: list[str]) -> Generator[Ques
     yield from asked(
         "contacts", "contacts", "The sheet prints them; - leaves them out.", "current 1-5, Rxx 2-3, Rxy 2-8"
     )
-    for key, ask, why, offer in (
-        ("time_constant", "lock-in time constant", "No sweep may outrun the filter.", "300 ms"),
-        ("poles", "lock-in poles", "More poles settle more slowly.", "4"),
-    ):
-        question = value(LockIn, (*at, "lockin", key), f"{which}: {ask}", why, offer)
-        yield _needed(question)
+    yield from _lockin((*at, "lockin"), which)
     sample["gates"] = yield from _gates(at, which)
     return sample
+
+
+def _lockin(at: Parts, which: str) -> Script:
+    """The output filter; a sample may go without."""
+    key: Parts = (*at, "time_constant")
+    why = "No sweep may outrun the filter; - for none."
+    asked = value(LockIn, key, f"{which}: lock-in time constant", why, "300 ms")
+
+    def puts(given: Any) -> dict[Parts, Any]:
+        return {at: LEFT_OUT} if given is LEFT_OUT else {key: given}
+
+    constant = yield replace(asked, optional=True, puts=puts)
+    if constant is not LEFT_OUT:
+        yield value(LockIn, (*at, "poles"), f"{which}: lock-in poles", "More poles settle more slowly.", "4")
 
 
 def _gates(at: Parts, which: str) -> Generator[Question, Any, list[dict[str, Any]]]:

@@ -111,6 +111,17 @@ class Document:
         role: Role = "rig" if problem.file == self.name("rig") and problem.file != self.week_path.name else "week"
         return Place.of(role, problem.where)
 
+    def words(self, problem: Problem) -> str:
+        """A problem as one would say it: the row's name where it has one, the key, the value, what is wanted."""
+        place = self.place_of(problem)
+        row = self.get(Place(place.role, place.parts[:2]))
+        name = str(row.get("name") or "") if isinstance(row, dict) and len(place.parts) > 1 else ""
+        where = Place(place.role, place.parts[2:]).where if name else place.where
+        about = " · ".join(part for part in (self.name(place.role), name, where) if part)
+        value = f" is {problem.value}" if problem.value else ""
+        hint = f" ({problem.hint})" if problem.hint else ""
+        return f"{about}{value}: {problem.expected}{hint}"
+
     # Edits
 
     def set(self, place: Place, value: Any, label: str = "") -> None:

@@ -154,21 +154,20 @@ def _ruler(grid: Grid, marked: range) -> list[Row]:
     every = next((hours for hours in (1, 2, 3, 6, 12, 24) if grid.columns / (shown_h / hours) >= 4), 24)
     first = grid.clock.moment(grid.window.start_s)
     day = first - timedelta(days=1)
-    ends = -1
+    ends = 0
     while grid.clock.second(day) <= grid.window.end_s + 86400:
         for hour in range(0, 24, every):
             place = math.floor(grid.column(grid.clock.second(grid.clock.wall(day, time(hour)))) + 1e-9)
             if 0 <= place < grid.columns:
                 _put(hours, place, f"{hour:02d}" if grid.columns > place + 1 else "", "ruler")
-            if hour == 0 and -40 < place < grid.columns:
-                text = (
-                    f"│{WEEKDAYS[day.weekday()]} {day.day}" if place >= 0 else f" {WEEKDAYS[day.weekday()]} {day.day}"
-                )
+            if hour == 0 and place < grid.columns:
                 at = max(place, 0)
-                covered = grid.column(grid.clock.second(grid.clock.wall(day + timedelta(days=1), time(0))))
-                if at > ends - 1 and covered - at > len(text) - 1 and at + len(text) <= grid.columns:
-                    _put(days, at, text, "day")
-                    ends = at + len(text)
+                name = f"{WEEKDAYS[day.weekday()]} {day.day}"
+                midnight_s = grid.clock.second(grid.clock.wall(day + timedelta(days=1), time(0)))
+                room = min(grid.column(midnight_s), grid.columns) - at
+                if at >= ends and room > len(name):
+                    _put(days, at, f"│{name}" if place >= 0 else f" {name}", "day")
+                    ends = at + len(name) + 1
                 elif place >= 0:
                     _put(days, at, "│", "day")
         day += timedelta(days=1)
@@ -261,8 +260,6 @@ def _curve_sign(lane: CurveLane, filled: float, value: float, *, lines: bool, be
         return ("─", "line") if lines else (" ", "empty")
     if value < 0:
         return ("▒" if filled >= 0.5 else "░"), f"{lane.name} negative"
-    if lines and filled < 0.5:
-        return "─", "line"
     return EIGHTHS[max(1, min(8, round(8 * filled)))], look
 
 

@@ -125,6 +125,7 @@ _TABLES: dict[str, dict[str, str]] = {
         "stage": "the cold stage with the samples",
         "room": "the room, and whom to call",
         "policies": "rules of this site",
+        "cooldown": "how this rig is cooled from room temperature",
     },
     "Magnet": {
         "rated_field_T": "the highest field the maker allows",
@@ -133,6 +134,14 @@ _TABLES: dict[str, dict[str, str]] = {
         "ramp_table": "the fastest ramp for each range of |B|",
         "supply": "the power supply",
         "switch": "the persistent switch",
+        "lambda_table": "the fastest ramps beyond the rated field, below the lambda point",
+        "conductor": "the wire, section by section, for its margins",
+        "winding": "its size, for the stray field",
+    },
+    "Winding": {
+        "mean_radius_m": "of the winding, for the stray field",
+        "length_m": "of the winding",
+        "measured": "distances at which a field was measured",
     },
     "RampSegment": {
         "to_T": "this row holds up to this |B|; the edge belongs to it",
@@ -145,7 +154,6 @@ _TABLES: dict[str, dict[str, str]] = {
         "polarity": "unipolar supplies stop at zero to be reversed",
     },
     "Conductor": {"name": "of this part of the winding"},
-    "Winding": {"mean_radius_m": "of the winding, for the stray field", "length_m": "of the winding"},
     "StrayDistance": {"field_T": "measured at these distances"},
     "Cooldown": {
         "copper_kg": "mass to be cooled",

@@ -92,18 +92,30 @@ def explain(field: Field, text: str) -> Explained:
 def meaning(field: Field, read: Any, text: str) -> str:
     """What was understood, where that says more than the text itself."""
     if isinstance(read, Amount) and field.kind is FieldKind.QUANTITY:
-        if field.unit != "min" and text.endswith(field.unit):
+        unit = _BARE.sub("", text, count=1).strip()
+        if (unit == field.unit and unit != "min") or _bare_unit(unit) == _bare_unit(
+            {"min": "s"}.get(field.unit, field.unit)
+        ):
             return ""
         said = plain_amount(float(read), field.unit)
         return "" if said.replace(" ", "") == text.replace(" ", "") else f"= {said}"
     if isinstance(read, TemperatureAsk) and read.kelvin is not None:
-        return f"{'at most' if read.at_most else '='} {plain_amount(read.kelvin, 'mK')}"
+        said = plain_amount(read.kelvin, "mK")
+        return "" if said == text else f"{'at most' if read.at_most else '='} {said}"
     if isinstance(read, Range):
         return f"{read.first:.6g} to {read.last:.6g}"
     if field.kind in (FieldKind.QUANTITIES, FieldKind.FILLINGS, FieldKind.NAMES, FieldKind.HOURS, FieldKind.SPANS):
         count = len(read)
         return f"{count} of them" if count > 1 else ""
     return ""
+
+
+def _bare_unit(unit: str) -> str:
+    """A simple unit without its prefix, so that 25 mT is not told to be 0.025 T; others are kept as they are."""
+    for simple in ("T", "A", "V", "K", "L", "H", "ohm", "V/s", "s"):
+        if unit.endswith(simple) and unit[: -len(simple)] in ("", "m", "µ", "μ", "u", "n", "k", "M"):
+            return simple
+    return unit
 
 
 def _text(_field: Field, text: str) -> Any:

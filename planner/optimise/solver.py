@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING
 from planner.optimise.bounds import Floors, cost_bound, floors, prize_bound
 from planner.optimise.builder import Builder
 from planner.optimise.compiled.warm import Compiled, Warmer, compile_all
-from planner.optimise.construct import construct
+from planner.optimise.construct import Constructor
 from planner.optimise.exact import is_small, solve_exactly
 from planner.optimise.incumbent import Incumbent
 from planner.optimise.moves import Costs, static_costs
@@ -22,6 +22,7 @@ from planner.optimise.tables import Tables, build_tables
 if TYPE_CHECKING:
     from planner.optimise.cpsat.run import Relaxation
 
+CONSTRUCTIONS = 6  # first orders if the compiled kernels are still to come, or the result is to be reproducible
 CYCLES = (0.08, 0.32, 0.6)  # shares of the time that each cooling takes
 COLD = 0.004  # last temperature as a share of the first
 DETERMINISTIC_UNITS = 0.2  # of CP-SAT for each second of a reproducible solve
@@ -62,13 +63,23 @@ class Solver:
         """Whether nothing is left to do."""
         return self.incumbent.exact or (self.incumbent.prize_proven and self.incumbent.cost_proven)
 
-    def begin(self, halt: Callable[[], bool]) -> None:
-        """First order and first bounds."""
+    def begin(self, halt: Callable[[], bool], *, most: int) -> None:
+        """First bounds, and the orders of the first ``most`` constructions."""
         self.incumbent.bound(prize=prize_bound(self.problem, self.floors))
         builder = Builder(self.problem, self.tables, self.warmer.plain)
-        if construct(builder, self.costs, halt):
-            self.incumbent.offer(builder.items, "construction")
+        self.constructor = Constructor(builder, self.costs, self.seed, halt)
+        for _ in range(most):
+            self.construct()
+            if halt() or self.incumbent.best is None:
+                break
         self.tighten()
+
+    def construct(self) -> None:
+        """One more construction."""
+        best = self.incumbent.best
+        order = self.constructor.another(best.order if best is not None else ())
+        if order is not None and self.incumbent.offer(order, "construction"):
+            self.tighten()
         self.incumbent.report()
 
     def tighten(self) -> None:
@@ -137,6 +148,10 @@ class Solver:
         for share in CYCLES:
             start, finish = finish, finish + share * whole
             while not self.late() and not self.proven() and (now := time.perf_counter()) < finish:
+                if not self.warmer.ready:
+                    # as plain Python annealing gets nowhere
+                    self.construct()
+                    continue
                 annealer.kernels = self.warmer.kernels
                 warm = COLD ** ((now - start) / (finish - start))
                 if annealer.piece(warm, warm, finish - now):
@@ -238,7 +253,8 @@ def solve(
 
 
 def _by_the_clock(solver: Solver) -> Result:
-    solver.begin(solver.late)
+    small = is_small(solver.problem, solver.tables)
+    solver.begin(solver.late, most=1 if solver.warmer.ready or small else CONSTRUCTIONS)
     solver.exactly(solver.late, compiled=False)
     if not solver.proven() and not solver.late():
         from planner.optimise.cpsat.run import RelaxationThread
@@ -254,7 +270,7 @@ def _by_the_clock(solver: Solver) -> Result:
 
 def _reproducibly(solver: Solver) -> Result:
     compile_all()
-    solver.begin(solver.asked)
+    solver.begin(solver.asked, most=CONSTRUCTIONS)
     solver.exactly(solver.asked, compiled=True)
     work = int(solver.seconds * TRIALS_PER_SECOND)
     if not solver.proven():

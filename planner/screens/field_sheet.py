@@ -210,6 +210,8 @@ class FieldSheet(Vertical):
         first = self._first_line(f"{row.label}: {row.help}" if row.help else row.label)
         if row.problem or row.means.startswith("✗"):
             second = Text(row.problem or row.means[2:], message_style(theme, "bad"))
+            if row.problem and row.wanted:
+                second.append(f"  {row.wanted}", message_style(theme, "quiet"))
         else:
             second = Text(f"{row.means}  " if row.means else "", message_style(theme, "good"))
             second.append(row.wanted, message_style(theme, "quiet"))

@@ -18,7 +18,7 @@ from planner.screens.looks import message_style
 from planner.screens.row_table import RowTable
 
 EXPLAINED = {
-    Kind.STOP: "a physical limit or the maker's: never waived, no sheet is written",
+    Kind.STOP: "a physical limit or the maker's, never waived: no plan that breaks it leaves as a sheet to be run",
     Kind.POLICY: "a rule of the site: a named role may waive it",
     Kind.WARN: "to be looked at before the week begins",
     Kind.NOTE: "to be known",
@@ -88,7 +88,7 @@ class FindingsPlace(Vertical):
     def _cells(self, item: Problem | Finding) -> list[Text]:
         theme = self.app.theme
         if isinstance(item, Problem):
-            what = self._fitting(clean(str(item)))
+            what = self._fitting(clean(self.session.document.words(item)))
             return [Text("FILE", message_style(theme, "bad")), Text(""), Text(""), what]
         request = self.session.document.request
         plan = self.session.plan
@@ -116,7 +116,8 @@ class FindingsPlace(Vertical):
             text.append("Nothing is found: the files can be read, and no check has anything to say.")
         elif isinstance(item, Problem):
             text.append("The file must be mended before the week can be planned.\n", message_style(theme, "bad"))
-            text.append(clean(str(item)))
+            text.append(clean(self.session.document.words(item)))
+            text.append(f"\nin the file: {item.where}" if item.where else "", message_style(theme, "quiet"))
         else:
             text.append(f"{str(item.kind).upper()}: {EXPLAINED[item.kind]}\n", message_style(theme, "strong"))
             plan, request = self.session.plan, self.session.document.request

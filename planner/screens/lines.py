@@ -127,7 +127,7 @@ class KeysLine(Static):
                 pairs = [("Enter", "type"), ("Space", "turn"), ("Tab", "other side"), *pairs]
         text = Text(no_wrap=True)
         for key, told in pairs:
-            if text.cell_len + len(key) + len(told) + 3 > self.app.size.width - 1:
+            if text.cell_len + len(key) + len(told) + 3 > self.app.size.width:
                 continue
             text.append(key, message_style(theme, "strong"))
             text.append(f" {told}  ", message_style(theme, "quiet"))

@@ -89,7 +89,7 @@ class PlanPlace(Vertical):
         step = plan.steps[self.timeline.at]
         rig = self.timeline.lanes and request_of(plan.sources).rig
         told = tell(plan, step, rig or None, self.session.findings)
-        text = Text(told.heading, message_style(theme, "strong"))
+        text = Text().append(told.heading, message_style(theme, "strong"))
         if not self.session.plan_is_current:
             text.append("  the week has been edited since: F9 solves again", message_style(theme, "warn"))
         for finding in told.findings:

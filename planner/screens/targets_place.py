@@ -19,6 +19,9 @@ from planner.screens.row_table import RowTable
 TARGETS = Place("week", ("targets",))
 
 
+NO_TARGETS = "No targets yet. a adds one; n turns a list of fillings × temperatures into targets at once."
+
+
 class TargetTable(RowTable):
     """The targets."""
 
@@ -129,9 +132,9 @@ class TargetsPlace(Vertical):
     def _show(self) -> None:
         row = self.row
         wanted = None if row is None else (row.place, row.kind)
-        if wanted != self._opened:
+        if wanted != self._opened or wanted is None:
             self._opened = wanted
-            self.sheet.show(None if row is None else TableForm(self.session, row.place))
+            self.sheet.show(None if row is None else TableForm(self.session, row.place), NO_TARGETS)
 
     @on(DataTable.RowHighlighted, "TargetTable")
     def _highlighted(self, event: DataTable.RowHighlighted) -> None:

@@ -115,7 +115,9 @@ PLANS: list[tuple[str, Any, str]] = [
 ]  # fmt: skip
 
 
-@pytest.mark.parametrize(("place", "value", "says"), PLANS, ids=[f"{place}={value!r}"[:60] for place, value, _ in PLANS])
+@pytest.mark.parametrize(
+    ("place", "value", "says"), PLANS, ids=[f"{place}={value!r}"[:60] for place, value, _ in PLANS]
+)
 @pytest.mark.parametrize("command", [("check",), ("sheet", "-o", "out"), ("sheet", "--review")])
 def test_damaged_plans(
     folder: Path, plan_data: dict[str, Any], place: str, value: Any, says: str, command: tuple[str, ...]
@@ -161,7 +163,11 @@ def test_what_is_no_plan_at_all(folder: Path, command: str, content: bytes, says
 
 @pytest.mark.parametrize(
     ("formats", "says"),
-    [("pdf", 'format is "pdf": expected one of html, csv, json'), ("htm", 'did you mean "html"?'), (",", "at least one")],
+    [
+        ("pdf", 'format is "pdf": expected one of html, csv, json'),
+        ("htm", 'did you mean "html"?'),
+        (",", "at least one"),
+    ],
 )
 def test_unknown_sheet_formats(folder: Path, plan_data: dict[str, Any], formats: str, says: str) -> None:
     put(folder, **{"plan.json": json.dumps(plan_data)})

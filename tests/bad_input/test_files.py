@@ -98,7 +98,9 @@ WEEKS: list[tuple[str, Any, str]] = [
 ]  # fmt: skip
 
 
-@pytest.mark.parametrize(("place", "value", "says"), WEEKS, ids=[f"{place}={value!r}"[:60] for place, value, _ in WEEKS])
+@pytest.mark.parametrize(
+    ("place", "value", "says"), WEEKS, ids=[f"{place}={value!r}"[:60] for place, value, _ in WEEKS]
+)
 def test_broken_weeks(tmp_path: Path, place: str, value: Any, says: str) -> None:
     put(tmp_path, week=week_text({place: value}), rig=rig_text())
     assert_refused(tmp_path, says, "check", "week.toml")
@@ -198,7 +200,9 @@ RIGS: list[tuple[Changes, str]] = [
 ]  # fmt: skip
 
 
-@pytest.mark.parametrize(("changes", "says"), RIGS, ids=[f"{list(change)[0]}"[:60] + says[:20] for change, says in RIGS])
+@pytest.mark.parametrize(
+    ("changes", "says"), RIGS, ids=[f"{list(change)[0]}"[:60] + says[:20] for change, says in RIGS]
+)
 def test_broken_rigs(tmp_path: Path, changes: Changes, says: str) -> None:
     put(tmp_path, week=week_text(), rig=rig_text(changes).replace("NaN", "nan"))
     assert_refused(tmp_path, says, "check", "week.toml")

@@ -70,9 +70,15 @@ SCALARS = (
     | st.integers(-(2**70), 2**70)
     | st.floats()
     | st.text(max_size=8)
-    | st.sampled_from(["1 T", "-1 T", "1e9 T", "1e-9 T", "0 T", "50 mK", "1e8 s", "0.001 s", "90 m", "1 %", "100 %", "60 L"])
-    | st.sampled_from(["1 V", "0.1 T/min", "0 T to 1 T", "1/3", "2 to 1", "base", "unknown", "persistent", "hold", "map"])
-    | st.sampled_from(["Tue 08:00", "Sun 24:00", "2031-03-04T08:00", "daily", "Mon-Fri", "08:00", "Europe/Lisbon", "S1"])
+    | st.sampled_from(
+        ["1 T", "-1 T", "1e9 T", "1e-9 T", "0 T", "50 mK", "1e8 s", "0.001 s", "90 m", "1 %", "100 %", "60 L"]
+    )
+    | st.sampled_from(
+        ["1 V", "0.1 T/min", "0 T to 1 T", "1/3", "2 to 1", "base", "unknown", "persistent", "hold", "map"]
+    )
+    | st.sampled_from(
+        ["Tue 08:00", "Sun 24:00", "2031-03-04T08:00", "daily", "Mon-Fri", "08:00", "Europe/Lisbon", "S1"]
+    )
 )
 VALUES = st.recursive(
     SCALARS,
@@ -80,9 +86,24 @@ VALUES = st.recursive(
     max_leaves=5,
 )
 TARGETS: list[dict[str, Any]] = [
-    {"name": "a", "kind": "hold", "filling": "1", "duration": "1 h", "temperature": "≤ 50 mK", "gates": {"top": "0.1 V"}},
+    {
+        "name": "a",
+        "kind": "hold",
+        "filling": "1",
+        "duration": "1 h",
+        "temperature": "≤ 50 mK",
+        "gates": {"top": "0.1 V"},
+    },
     {"name": "b", "kind": "field sweep", "field": "0 T to 1 T", "feature": "20 mT", "after": ["a"]},
-    {"name": "c", "kind": "gate sweep", "field": "1 T", "gate": "top", "sweep": "0 V to 1 V", "points": 5, "dwell": "1 s"},
+    {
+        "name": "c",
+        "kind": "gate sweep",
+        "field": "1 T",
+        "gate": "top",
+        "sweep": "0 V to 1 V",
+        "points": 5,
+        "dwell": "1 s",
+    },
     {"name": "d", "kind": "map", "filling": "2 to 1", "rungs": 2, "gate": "top", "sweep": "0 V to 1 V", "points": 5},
     {"name": "e", "kind": "temperature series", "field": "1 T", "temperatures": ["50 mK", "0.1 K"], "duration": "1 h"},
     {"name": "f", "kind": "other work", "what": "look", "duration": "1 h", "attended": True},
@@ -146,7 +167,9 @@ def test_any_value_anywhere_in_a_rig(text: str) -> None:
 
 
 def test_the_fuzzed_texts_can_be_read_before_they_are_changed() -> None:
-    assert len(parse_week("".join(f"{key} = {toml(value)}\n" for key, value in WEEK_DATA.items())).targets) == len(TARGETS)
+    assert len(parse_week("".join(f"{key} = {toml(value)}\n" for key, value in WEEK_DATA.items())).targets) == len(
+        TARGETS
+    )
     assert parse_rig("".join(f"{key} = {toml(value)}\n" for key, value in RIG_DATA.items())).name == "Round-number rig"
     for text in WEEKS:
         assert parse_week(text).targets

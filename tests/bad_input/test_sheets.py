@@ -20,7 +20,11 @@ GOOD = f"{HEAD}\nA,hold,1,1\n"
 
 @pytest.fixture
 def folder(tmp_path: Path) -> Path:
-    put(tmp_path, week=week_text(None, [{"name": "T1", "kind": "hold", "field": "1 T", "duration": "1 h"}]), rig=rig_text())
+    put(
+        tmp_path,
+        week=week_text(None, [{"name": "T1", "kind": "hold", "field": "1 T", "duration": "1 h"}]),
+        rig=rig_text(),
+    )
     return tmp_path
 
 

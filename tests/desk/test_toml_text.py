@@ -60,7 +60,10 @@ def changed_lines(before: str, after: str) -> list[str]:
 
 def test_a_value_changes_and_its_comment_stays() -> None:
     edited = set_value(ODD, ("present", "level"), "77 %")
-    assert changed_lines(ODD, edited) == ['-level = "88 %"   # as the gauge reads', '+level = "77 %"   # as the gauge reads']
+    assert changed_lines(ODD, edited) == [
+        '-level = "88 %"   # as the gauge reads',
+        '+level = "77 %"   # as the gauge reads',
+    ]
 
 
 @pytest.mark.parametrize(
@@ -83,7 +86,7 @@ def test_a_new_key_stands_at_the_end_of_its_table(parts: Any, value: Any, line: 
 
 def test_a_key_of_a_table_in_one_line() -> None:
     edited = set_value(ODD, ("present", "gates", "side gate"), "2 V")
-    assert "gates = { \"H1/top\" = \"-0.5 V\", back = '1 V', \"side gate\" = \"2 V\" }" in edited
+    assert 'gates = { "H1/top" = "-0.5 V", back = \'1 V\', "side gate" = "2 V" }' in edited
     assert 'gates = { back = \'1 V\' }' in remove(ODD, ("present", "gates", "H1/top"))  # fmt: skip
     assert "gates = {}" in remove(remove(ODD, ("present", "gates", "H1/top")), ("present", "gates", "back"))
 
@@ -167,7 +170,7 @@ def test_every_value_is_found_where_it_stands(text: str) -> None:
 @settings(max_examples=150, deadline=None)
 @given(st.data())
 def test_any_edit_says_what_is_meant_and_can_be_read(data: st.DataObject) -> None:
-    """The functions confirm their own result with tomllib; here, that they refuse nothing ordinary and change little."""
+    """The functions confirm their result with tomllib; here, that they refuse nothing ordinary and change little."""
     text = data.draw(st.sampled_from(TEXTS))
     plain = tomllib.loads(text)
     parts = data.draw(st.sampled_from(leaves(plain)))
@@ -185,8 +188,15 @@ def test_any_edit_says_what_is_meant_and_can_be_read(data: st.DataObject) -> Non
         assert set(comments) <= {line for line in text.splitlines() if line.strip().startswith("#")}
 
 
-@given(st.recursive(st.one_of(st.text(max_size=8), st.integers(-99, 99), st.booleans()),
-                    lambda inner: st.one_of(st.lists(inner, max_size=3), st.dictionaries(st.text(max_size=4), inner, max_size=3)),
-                    max_leaves=6))  # fmt: skip
+LEAVES = st.one_of(st.text(max_size=8), st.integers(-99, 99), st.booleans())
+
+
+@given(
+    st.recursive(
+        LEAVES,
+        lambda inner: st.one_of(st.lists(inner, max_size=3), st.dictionaries(st.text(max_size=4), inner, max_size=3)),
+        max_leaves=6,
+    )
+)
 def test_a_value_written_reads_back(value: Any) -> None:
     assert tomllib.loads(f"x = {written(value)}")["x"] == value
