@@ -58,8 +58,9 @@ def _open(week: Path | None, seconds: float, seed: int, *, reproducible: bool) -
 
     app = FridgeweekApp(session)
     app.run()
-    if not app.session.leave():
-        # The solver's thread is deep in compiled code that hears nothing: end here rather than wait for it.
+    if app.session.solve is not None:
+        # Left while solving: compiled code hears of it only now and then, and tidying up after it takes its time.
+        app.session.leave(0.2)
         sys.stdout.flush()
         sys.stderr.flush()
         os._exit(app.return_code or 0)

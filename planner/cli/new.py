@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import contextlib
 import os
 import sys
 import textwrap
@@ -124,6 +125,8 @@ def _read(prompt: str) -> str:
         head, _, last = prompt.rpartition("\n")
         if head:
             click.echo(head, err=True)
+        with contextlib.suppress(ImportError):  # not on every system; there the line is edited as the terminal does it
+            import readline  # noqa: F401 - makes input() editable
         return input(last)
     click.echo(prompt, nl=False, err=True)
     line, whole = _line(), True

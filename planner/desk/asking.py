@@ -139,7 +139,8 @@ def value(
         return explain(field, text).message
 
     optional = not field.required
-    return Question(parts, ask, why, offer, read, wanted(field), optional, mark or marked, says=says)
+    told = wanted(field) or "text of one line"
+    return Question(parts, ask, why, offer, read, told, optional, mark or marked, says=says)
 
 
 def field_at(model: type[Table], key: Parts) -> Field:
@@ -247,7 +248,8 @@ class Asking:
         if question is None:
             raise ValueError("everything is answered")
         if len(text) > LONGEST_ANSWER or not text.isprintable():
-            raise ValueError(f"expected one line of at most {LONGEST_ANSWER} characters: {question.wanted}")
+            most = f"at most {LONGEST_ANSWER} characters, none of them a control character"
+            raise ValueError(f"expected one line of {most}: {question.wanted}")
         text = text.strip()
         answer = Answer(question, question.value_of(text) if text else question.offered, unseen=not text)
         if problems := self._problems([*self._answers, answer]):

@@ -72,10 +72,13 @@ class TableForm:
         field = self._field(key)
         if field is None:
             return Explained(not text.strip(), "unknown here: leave it empty to take it out")
+        choices = self._choices(field)
+        if field.kind is FieldKind.NAMES and text.strip() in choices:  # one name, commas in it or not
+            return Explained(True, "", [text.strip()])
         found = explain(field, text)
         if not found.usable or not text.strip():
             return found
-        if (choices := self._choices(field)) and (unknown := _unknown(found.value, choices)):
+        if choices and (unknown := _unknown(found.value, choices)):
             return Explained(False, f"{unknown}: expected one of {', '.join(choices)}")
         reach = self._meant(field, found.value)
         if reach is None or not reach.text:

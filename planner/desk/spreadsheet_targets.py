@@ -201,7 +201,10 @@ def row_target(columns: tuple[Column, ...], row: Row, name: str) -> tuple[dict[s
         table = target
         for part in column.parts[:-1]:
             table = table.setdefault(part, {})
-        table[column.parts[-1]] = value
+        if isinstance(value, dict):
+            table.setdefault(column.parts[-1], {}).update(value)
+        else:
+            table[column.parts[-1]] = value
     return target, problems
 
 
@@ -272,10 +275,11 @@ def _whole(cell: Cell) -> Any:
 
 def _yes_no(cell: Cell) -> Any:
     known = {"yes": True, "y": True, "true": True, "x": True, "no": False, "n": False, "false": False}
-    word = str(cell).strip().lower()
-    if word not in known and cell not in (0, 1):
+    known |= {"1": True, "0": False}
+    word = _number(cell).lower() if isinstance(cell, float) else str(cell).lower()
+    if word not in known:
         raise ValueError("expected yes or no")
-    return known[word] if word in known else bool(cell)
+    return known[word]
 
 
 def _filling(cell: Cell) -> Any:

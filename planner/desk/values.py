@@ -44,7 +44,10 @@ def shown(value: Any) -> str:
     if isinstance(value, list):
         if value and all(isinstance(row, dict) for row in value):
             return "; ".join(_row_shown(row) for row in value)
-        return ", ".join(shown(one) for one in value)
+        texts = [shown(one) for one in value]
+        if any("," in text for text in texts):  # names with commas in them are set apart by semicolons
+            return "; ".join(texts) + (";" if len(texts) == 1 else "")
+        return ", ".join(texts)
     if isinstance(value, dict):
         return "; ".join(f"{name} {shown(one)}" for name, one in value.items())
     return "" if value is None else str(value)
@@ -181,7 +184,7 @@ def _fillings(field: Field, text: str) -> Any:
 
 
 def _names(_field: Field, text: str) -> Any:
-    return _split(text)
+    return _split(text, ";" if ";" in text else ",")
 
 
 def _choices(field: Field, text: str) -> Any:

@@ -196,4 +196,6 @@ def _typical_burn(problem: Problem, tables: Tables) -> Floats:
 def _start_floor(tables: Tables, service: int) -> float:
     """Level that a refill needs to begin."""
     reservoir, first = tables.node[service, REFILL], tables.node[service, FIRST]
-    return float(tables.rule[first, START_MIN, reservoir]) if tables.node[service, COUNT] else 0.0
+    if reservoir < 0 or tables.node[service, COUNT] == 0:
+        return 0.0
+    return float(tables.rule[first, START_MIN, reservoir])

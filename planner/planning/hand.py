@@ -2,18 +2,32 @@
 
 from __future__ import annotations
 
+import threading
 from collections.abc import Sequence
+from dataclasses import replace
+
+import numpy as np
 
 from planner.optimise.problem import Problem
 from planner.optimise.result import Result, TraceBlock, TraceStep, TraceWait
 from planner.plan import HandOrder
 from planner.planning.compile import HELIUM, Compiled
 
+COMPARE_S = 2.0
 
-def hand_orders(compiled: Compiled, result: Result) -> tuple[HandOrder, ...]:
+
+def hand_orders(
+    compiled: Compiled,
+    result: Result,
+    *,
+    seed: int = 0,
+    reproducible: bool = False,
+    stop: threading.Event | None = None,
+) -> tuple[HandOrder, ...]:
     """How the plan compares with "as listed" and "sorted by field".
 
-    A hand order that cannot fit everything is compared with this plan's own order less what the other leaves out.
+    A hand order that cannot fit everything is compared with the best order found for just what it does fit: this plan's
+    own less the rest, or that of a short solve.
     """
     from planner.optimise import follow
 
@@ -28,7 +42,7 @@ def hand_orders(compiled: Compiled, result: Result) -> tuple[HandOrder, ...]:
         if theirs.objective is None:
             continue
         shared = set(_takes(problem, theirs.order))
-        ours = _restricted(problem, result, shared)
+        ours = _restricted(problem, result, shared, seed, reproducible, stop)
         if ours is None:
             continue
         moving_s, litres = _spent(compiled, theirs.trace)
@@ -39,12 +53,32 @@ def hand_orders(compiled: Compiled, result: Result) -> tuple[HandOrder, ...]:
     return tuple(found)
 
 
-def _restricted(problem: Problem, result: Result, shared: set[int]) -> tuple[TraceStep, ...] | None:
-    """The trace of this plan's order with only the shared takes, services that then pour too little left out too."""
-    from planner.optimise import evaluate
+def _restricted(
+    problem: Problem,
+    result: Result,
+    shared: set[int],
+    seed: int,
+    reproducible: bool,
+    stop: threading.Event | None,
+) -> tuple[TraceStep, ...] | None:
+    """The trace of the best order known for the shared takes alone."""
+    from planner.optimise import solve
 
     if shared == set(_takes(problem, result.order)):
         return result.trace
+    only = np.isin(np.arange(problem.takes), list(shared))
+    alone = replace(problem, prize=np.where(only, problem.prize, 0), must=only)
+    anew = solve(alone, seconds=COMPARE_S, seed=seed, reproducible=reproducible, stop=stop)
+    less = _less(problem, result, shared)
+    found = [anew.trace] if anew.feasible and set(_takes(problem, anew.order)) == shared else []
+    found += [less] if less is not None else []
+    return min(found, key=lambda trace: sum(step.cost for step in trace), default=None)
+
+
+def _less(problem: Problem, result: Result, shared: set[int]) -> tuple[TraceStep, ...] | None:
+    """This plan's order with only the shared takes, services that then pour too little left out too."""
+    from planner.optimise import evaluate
+
     order = [node for node in result.order if set(problem.covers[node]) <= shared]
     while True:
         read = evaluate(problem, order)

@@ -21,6 +21,7 @@ from planner.planning.progress import Progress
 Listener = Callable[[Progress], None]
 
 EXPLAIN_S = 4.0
+PATIENT_S = 60.0  # enough for every try, so that the clock decides nothing
 
 
 def plan_week(
@@ -68,11 +69,18 @@ def plan_week(
     )
     if not result.feasible:
         raise NoPlanError(why_no_plan(compiled, result))
-    return assemble(compiled, result, explain_s=60.0 if reproducible else EXPLAIN_S)
+    return assemble(compiled, result, seed=seed, reproducible=reproducible, stop=stop)
 
 
-def assemble(compiled: Compiled, result: Result, *, explain_s: float = EXPLAIN_S) -> Plan:
-    """The plan that a solve's answer stands for; ``explain_s`` is the time to find out why takes were left out."""
+def assemble(
+    compiled: Compiled,
+    result: Result,
+    *,
+    seed: int = 0,
+    reproducible: bool = False,
+    stop: threading.Event | None = None,
+) -> Plan:
+    """The plan that a solve's answer stands for, explained, compared and checked."""
     from planner.checks import check_plan
 
     request = compiled.request
@@ -88,9 +96,9 @@ def assemble(compiled: Compiled, result: Result, *, explain_s: float = EXPLAIN_S
         end=week.clock.moment(week.horizon_s),
         sources=request.sources,
         steps=steps,
-        left_out=left_out(compiled, result, seconds=explain_s),
+        left_out=left_out(compiled, result, seconds=PATIENT_S if reproducible else EXPLAIN_S),
         score=_score(compiled, result, steps),
-        compared=hand_orders(compiled, result),
+        compared=hand_orders(compiled, result, seed=seed, reproducible=reproducible, stop=stop),
         recovery=compiled.recovering,
         made_by=f"fridgeweek {_version()}",
     )

@@ -14,7 +14,7 @@ from planner.clock import WEEKDAYS, Clock
 from planner.errors import InputError
 from planner.files import Request, Rig, request_of
 from planner.files.level import level_at
-from planner.plan import HandOrder, LeftOut, Plan, Score, Step, StepKind
+from planner.plan import LeftOut, Plan, Score, Step, StepKind
 from planner.report.findings import findings_table
 from planner.report.wording import hours, kelvin, plain, rounded, tesla
 
@@ -42,7 +42,7 @@ def summary(plan: Plan, console: Console) -> None:
     _left_out(plan.left_out, letters, console)
     _section("Findings", console)
     findings_table(plan.findings, plan.clock, console)
-    _compared(plan.compared, console)
+    _compared(plan, console)
     console.print()
     console.print(Text(CAUTION, "italic"))
 
@@ -164,7 +164,7 @@ def _helium(step: Step, rig: Rig | None) -> str:
 def _totals(plan: Plan, console: Console) -> None:
     score = plan.score
     wet = any(step.helium_after_L is not None for step in plan.steps)
-    takes = sum(step.kind == StepKind.TAKE and not decides(step) for step in plan.steps)
+    takes = _takes_done(plan)
     transfers = sum(step.poured_L > 0 for step in plan.steps)
     poured_L = sum(step.poured_L for step in plan.steps)
     pour = "transfer pours" if transfers == 1 else "transfers pour"
@@ -208,19 +208,25 @@ def _left_out(left_out: tuple[LeftOut, ...], letters: dict[str, str], console: C
     console.print(table)
 
 
-def _compared(orders: tuple[HandOrder, ...], console: Console) -> None:
-    if not orders:
+def _takes_done(plan: Plan) -> int:
+    return sum(step.kind == StepKind.TAKE and not decides(step) for step in plan.steps)
+
+
+def _compared(plan: Plan, console: Console) -> None:
+    """Work that a hand order does not fit comes first; then hours and litres on the takes that both do."""
+    if not plan.compared:
         return
-    _section("Against orders made by hand, on the same takes", console)
+    _section("Against orders made by hand, on the takes they fit", console)
     table = Table(box=None, padding=(0, 2, 0, 0), show_edge=False, header_style="bold")
     table.add_column("order", overflow="fold")
     for name in ("takes", "by hand", "this plan", "saved"):
         table.add_column(name, justify="right")
-    for order in orders:
+    done = _takes_done(plan)
+    for order in plan.compared:
         saved_L = order.litres - order.plan_litres
         table.add_row(
             plain(order.name),
-            f"{order.takes}",
+            f"{order.takes} of {done}",
             f"{hours(order.moving_s)}, {order.litres:.1f} L",
             f"{hours(order.plan_moving_s)}, {order.plan_litres:.1f} L",
             f"{hours(order.moving_s - order.plan_moving_s)}, {saved_L:.1f} L".replace("-", "−"),

@@ -3,11 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from pathlib import Path
 from typing import Any, ClassVar
 
-from textual import on, work
-from textual.app import App, ComposeResult, SystemCommand
+from textual import on
+from textual.app import ComposeResult, SystemCommand
 from textual.binding import Binding
 from textual.containers import VerticalScroll
 from textual.events import DescendantFocus
@@ -16,14 +15,15 @@ from textual.screen import Screen
 from textual.widget import Widget
 from textual.widgets import ContentSwitcher
 
-from planner.desk.document import ChangedOnDiskError, Document
 from planner.desk.place import Place
 from planner.desk.session import Session
 from planner.desk.solving import Snapshot, SolveState
 from planner.errors import PlannerError, Problem
 from planner.screens.actions import ACTIONS, TITLES, here, shown_key
-from planner.screens.dialogs import AskScreen, GridScreen, HelpScreen, PathScreen
+from planner.screens.asked import Asked
+from planner.screens.dialogs import GridScreen, HelpScreen
 from planner.screens.field_sheet import Entry, FieldSheet, Lines
+from planner.screens.file_actions import FileActions
 from planner.screens.findings_place import FindingsPlace
 from planner.screens.lines import KeysLine, PlacesLine, SolveLine, TopLine
 from planner.screens.looks import LOOKS, next_look
@@ -39,14 +39,15 @@ class SolveChanged(Message):
     """A solve has something to say; posted from its thread."""
 
 
-class FridgeweekApp(App[None]):
+class FridgeweekApp(FileActions):
     """A week of fridge time: its files, its plan, its sheet."""
 
     TITLE = "fridgeweek"
-    ENABLE_COMMAND_PALETTE = True
+    NOTIFICATION_TIMEOUT = 4
     CSS = """
     Screen { background: $background; color: $foreground; }
     ContentSwitcher { height: 1fr; }
+    ToastRack { dock: top; align: right top; margin-top: 2; }
     DataTable { background: $background; scrollbar-size: 1 1; overflow-x: hidden; }
     VerticalScroll { scrollbar-size: 1 1; }
     DataTable > .datatable--header { background: $surface; color: $foreground; }
@@ -60,8 +61,7 @@ class FridgeweekApp(App[None]):
     ] + [Binding("escape", "back_to_list", "back", show=False)]
 
     def __init__(self, session: Session) -> None:
-        super().__init__()
-        self.session = session
+        super().__init__(session)
         self.place = "targets"
         self._ticking: Any = None
         for theme in LOOKS.values():
@@ -96,7 +96,7 @@ class FridgeweekApp(App[None]):
 
     def _begin(self) -> None:
         self.go(self.place)
-        self._offer_draft()
+        self.offer_draft()
 
     # Places
 
@@ -169,6 +169,10 @@ class FridgeweekApp(App[None]):
         except PlannerError as error:
             self.notify(str(error), title="Not done", severity="warning", timeout=8, markup=False)
         self.refresh_lines()
+
+    @on(Asked)
+    def _asked(self, event: Asked) -> None:
+        self.run_named(event.name)
 
     def action_back_to_list(self) -> None:
         """From the values back to the list they belong to."""
@@ -279,7 +283,11 @@ class FridgeweekApp(App[None]):
     # Solving
 
     def do_solve(self) -> None:
-        """Solve the week in the background."""
+        """Solve the week in the background; where the files have problems, show those."""
+        if self.session.document.problems:
+            self.go("findings")
+            self.notify("The files must be mended first.", severity="warning", markup=False)
+            return
         self.session.start_solve(self._solve_changed)
         if self._ticking is None:
             self._ticking = self.set_interval(0.5, self.refresh_solve)
@@ -315,120 +323,9 @@ class FridgeweekApp(App[None]):
             self.query_one(PlanPlace).refresh_place()
         self.here.refresh_place()
 
-    # Files
-
-    def do_save(self) -> None:
-        """Save; ask where a file has changed on disk meanwhile."""
-        try:
-            self._saved(self.session.save())
-        except ChangedOnDiskError as error:
-            self._ask_overwrite(error)
-
-    def _saved(self, written: tuple[Path, ...]) -> None:
-        names = ", ".join(path.name for path in written)
-        self.notify(f"Saved {names}." if names else "Nothing to save.", timeout=3, markup=False)
-        self.refresh_all()
-
-    @work
-    async def _ask_overwrite(self, error: ChangedOnDiskError) -> None:
-        answer = await self.push_screen_wait(
-            AskScreen(
-                f"{', '.join(error.names)} has changed on disk since it was opened.",
-                "Somebody else may have edited it. What is written now replaces what they wrote.",
-                [
-                    ("write", "write mine over it"),
-                    ("reload", "read theirs; mine can be had back with undo"),
-                    ("back", "go back, write nothing"),
-                ],
-            )
-        )
-        try:
-            if answer == "write":
-                self._saved(self.session.save(overwrite=True))
-            elif answer == "reload":
-                self.do_reload()
-        except PlannerError as failed:
-            self.notify(str(failed), title="Not done", severity="warning", timeout=8, markup=False)
-
-    def do_reload(self) -> None:
-        """Read the files from disk again."""
-        self.session.reload()
-        self.refresh_all()
-
-    @work
-    async def _offer_draft(self) -> None:
-        draft = self.session.draft()
-        if draft is None:
-            return
-        changed = draft.base != self.session.document.texts
-        why = f"It was kept at {draft.kept_at}."
-        if changed:
-            why += " The files on disk have changed since: going on with it sets those changes aside until undone."
-        answer = await self.push_screen_wait(
-            AskScreen(
-                "There is unsaved work on this week from an earlier sitting.",
-                why,
-                [("take", "go on with it"), ("discard", "discard it"), ("later", "leave it for later")],
-            )
-        )
-        if answer == "take":
-            self.session.take_draft(draft)
-        elif answer == "discard":
-            self.session.discard()
-        self.refresh_all()
-
-    @work
-    async def do_open(self) -> None:
-        """Open another week file."""
-        path = await self.push_screen_wait(PathScreen("Open a week file", str(self.session.document.week_path)))
-        if not path:
-            return
-        if self.session.document.changed and not await self._may_go("open another week"):
-            return
-        try:
-            document = Document.open(path)
-        except PlannerError as error:
-            self.notify(str(error), title="Not opened", severity="warning", timeout=8, markup=False)
-            return
-        self.session.leave()
-        self.session = Session(document, self.session.remembered, self.session.effort)
+    async def show_session(self) -> None:
+        """Show the week that has been opened."""
         with self.batch_update():
             await self.query_one(ContentSwitcher).remove()
             await self.mount(self._places(), after=self.query_one(PlacesLine))
         self.go("targets")
-        self._offer_draft()
-
-    async def _may_go(self, what: str) -> bool:
-        """Ask what becomes of unsaved work; whether one may go on."""
-        answer = await self.push_screen_wait(
-            AskScreen(
-                f"Not all is saved. Before you {what}:",
-                self.session.document.week_path.name,
-                [
-                    ("save", "save it"),
-                    ("keep", "do not save it, keep it for the next opening"),
-                    ("discard", "discard it"),
-                    ("back", "go back"),
-                ],
-            )
-        )
-        if answer == "save":
-            try:
-                self.session.save()
-            except PlannerError as error:
-                self.notify(str(error), title="Not saved", severity="warning", timeout=8, markup=False)
-                return False
-        elif answer == "discard":
-            self.session.discard()
-        return answer != "back"
-
-    @work
-    async def do_leave(self) -> None:
-        """Leave; ask about unsaved work first."""
-        if not self.session.document.changed or await self._may_go("leave"):
-            self.session.stop_solve()
-            self.exit()
-
-    async def action_quit(self) -> None:
-        """Leave the program, as `do_leave` does."""
-        self.do_leave()

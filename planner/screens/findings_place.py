@@ -14,6 +14,7 @@ from planner.desk.telling import finding_words, step_at
 from planner.desk.wording import clean, day_time
 from planner.errors import Problem
 from planner.plan import Finding, Kind
+from planner.screens.asked import Asked
 from planner.screens.looks import message_style
 from planner.screens.row_table import RowTable
 
@@ -135,7 +136,7 @@ class FindingsPlace(Vertical):
     @on(DataTable.RowSelected, "FindingTable")
     def _selected(self, event: DataTable.RowSelected) -> None:
         event.stop()
-        self.app.run_named("jump")  # type: ignore[attr-defined]
+        self.post_message(Asked("jump"))
 
     def on_resize(self, _event: Resize) -> None:
         """Fit the columns."""

@@ -11,6 +11,7 @@ from planner.desk.solving import Snapshot, SolveState
 from planner.desk.telling import progress_words, score_words
 from planner.desk.wording import clean
 from planner.screens.actions import PLACE_KEYS, PLACES, TITLES, here, shown_key
+from planner.screens.asked import Asked
 from planner.screens.looks import message_style
 
 _ONE_LINE = "{name} {{ height: 1; background: {back}; padding: 0 1; text-wrap: nowrap; text-overflow: ellipsis; }}"
@@ -62,7 +63,7 @@ class PlacesLine(Static):
         """Go to the place that was clicked."""
         for start, end, name in self._spans:
             if start <= event.x - 1 < end:
-                self.app.run_named(f"place_{name}")  # type: ignore[attr-defined]
+                self.post_message(Asked(f"place_{name}"))
 
 
 class SolveLine(Static):
@@ -127,8 +128,9 @@ class KeysLine(Static):
                 pairs = [("Enter", "type"), ("Space", "turn"), ("Tab", "other side"), *pairs]
         text = Text(no_wrap=True)
         for key, told in pairs:
-            if text.cell_len + len(key) + len(told) + 3 > self.app.size.width:
+            if text.cell_len + len(key) + 1 + len(told) > self.app.size.width - 2:
                 continue
             text.append(key, message_style(theme, "strong"))
             text.append(f" {told}  ", message_style(theme, "quiet"))
+        text.rstrip()
         self.update(text, layout=False)

@@ -12,6 +12,7 @@ from planner.desk.form import TableForm
 from planner.desk.outline import Node, NodeKind, outline
 from planner.desk.place import Place, Role
 from planner.desk.session import Session
+from planner.screens.asked import Asked
 from planner.screens.field_sheet import FieldSheet
 from planner.screens.looks import message_style
 from planner.screens.row_table import RowTable
@@ -141,7 +142,7 @@ class OutlinePlace(Horizontal):
         if self._opened is not None:
             self.sheet.lines.focus()
         else:
-            self.app.run_named("add")  # type: ignore[attr-defined]
+            self.post_message(Asked("add"))
 
     # What keys do here
 

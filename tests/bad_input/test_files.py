@@ -98,9 +98,7 @@ WEEKS: list[tuple[str, Any, str]] = [
 ]  # fmt: skip
 
 
-@pytest.mark.parametrize(
-    ("place", "value", "says"), WEEKS, ids=[f"{place}={value!r}"[:60] for place, value, _ in WEEKS]
-)
+@pytest.mark.parametrize(("place", "value", "says"), WEEKS, ids=[f"{place}: {says}"[:60] for place, _, says in WEEKS])
 def test_broken_weeks(tmp_path: Path, place: str, value: Any, says: str) -> None:
     put(tmp_path, week=week_text({place: value}), rig=rig_text())
     assert_refused(tmp_path, says, "check", "week.toml")
@@ -156,7 +154,11 @@ TARGETS: list[tuple[Changes, Changes, str]] = [
 ]  # fmt: skip
 
 
-@pytest.mark.parametrize(("target", "changes", "says"), TARGETS, ids=[f"{change!r}"[:60] for _, change, _ in TARGETS])
+@pytest.mark.parametrize(
+    ("target", "changes", "says"),
+    TARGETS,
+    ids=[f"{next(iter(change), target['kind'])}: {says}"[:60] for target, change, says in TARGETS],
+)
 def test_broken_targets(tmp_path: Path, target: Changes, changes: Changes, says: str) -> None:
     row = {key: value for key, value in {**target, **changes}.items() if value is not REMOVED}
     text = week_text(None, [row]).replace("NaN", "nan").replace("Infinity", "inf")
@@ -200,9 +202,7 @@ RIGS: list[tuple[Changes, str]] = [
 ]  # fmt: skip
 
 
-@pytest.mark.parametrize(
-    ("changes", "says"), RIGS, ids=[f"{list(change)[0]}"[:60] + says[:20] for change, says in RIGS]
-)
+@pytest.mark.parametrize(("changes", "says"), RIGS, ids=[f"{next(iter(change))}: {says}"[:60] for change, says in RIGS])
 def test_broken_rigs(tmp_path: Path, changes: Changes, says: str) -> None:
     put(tmp_path, week=week_text(), rig=rig_text(changes).replace("NaN", "nan"))
     assert_refused(tmp_path, says, "check", "week.toml")

@@ -21,6 +21,9 @@ from tests.builders import rig_text, week_text
 from tests.cli.run import put
 
 MOST_S, MOST_BYTES = 5.0, 1_000_000_000
+CHECK = ("check", "week.toml")
+INTO = ("targets", "list.csv", "--into", "week.toml")
+SLOT = {"from": "Tue 08:00", "to": "Tue 09:00"}
 ROW = '[[targets]]\nname = "{n}"\nkind = "hold"\nsample = "S1"\nfield = "1 T"\nduration = "1 h"\n{more}'
 
 
@@ -60,25 +63,40 @@ def csv_rows(count: int, tail: str = "") -> str:
 
 
 HEAVY: list[tuple[str, Callable[[], dict[str, str | bytes]], tuple[str, ...], str]] = [
-    ("10 MB week", lambda: {"week": base() + "# x\n" * 2_500_000}, ("check", "week.toml"), "expected at most 1000000 bytes"),
-    ("10 MB rig", lambda: {"rig": b"#" * 10_000_000}, ("check", "week.toml"), "expected at most 1000000 bytes"),
-    ("10,000 targets", lambda: {"week": targets(10_000)}, ("check", "week.toml"), "expected at most"),
-    ("5,000 targets", lambda: {"week": targets(5_000)}, ("check", "week.toml"), "a week holds 2000 at most"),
-    ("no such names", lambda: {"week": targets(2_000, 'after = ["targt {n}"]\n')}, ("check", "week.toml"), "of this file"),
-    ("unknown keys", lambda: {"week": base() + "\n".join(f"x{n} = 1" for n in range(80_000))}, ("check", "week.toml"), "rows"),
-    ("wrong units", lambda: {"week": targets(2_000, 'decide = "{n} m"\n')}, ("check", "week.toml"), "minutes are written min"),
-    ("tables in tables", lambda: {"week": base() + "".join(f"[a{n}.b.c.d]\n" for n in range(60_000))}, ("check", "week.toml"), "rows"),
-    ("spaces", lambda: {"week": targets(180, 'excitation = "' + " " * 4900 + '\\u0007"\n')}, ("check", "week.toml"), "at most 200"),
-    ("slots", lambda: {"week": week_text({"users.0.slots": [{"from": "Tue 08:00", "to": "Tue 09:00"}] * 4900})}, ("check", "week.toml"), "at most 100 of them"),
+    ("10 MB week", lambda: {"week": base() + "# x\n" * 2_500_000}, CHECK, "expected at most 1000000 bytes"),
+    ("10 MB rig", lambda: {"rig": b"#" * 10_000_000}, CHECK, "expected at most 1000000 bytes"),
+    ("10,000 targets", lambda: {"week": targets(10_000)}, CHECK, "expected at most"),
+    ("5,000 targets", lambda: {"week": targets(5_000)}, CHECK, "a week holds 2000 at most"),
+    ("no such names", lambda: {"week": targets(2_000, 'after = ["targt {n}"]\n')}, CHECK, "of this file"),
+    ("unknown keys", lambda: {"week": base() + "\n".join(f"x{n} = 1" for n in range(80_000))}, CHECK, "rows"),
+    ("wrong units", lambda: {"week": targets(2_000, 'decide = "{n} m"\n')}, CHECK, "minutes are written min"),
+    ("tables in tables", lambda: {"week": base() + "".join(f"[a{n}.b.c.d]\n" for n in range(60_000))}, CHECK, "rows"),
+    ("spaces", lambda: {"week": targets(180, 'excitation = "' + " " * 4900 + '\\u0007"\n')}, CHECK, "at most 200"),
+    ("slots", lambda: {"week": week_text({"users.0.slots": [SLOT] * 4900})}, CHECK, "at most 100 of them"),
     ("10 MB CSV", lambda: {"list.csv": "x" * 10_000_000}, ("targets", "list.csv"), "expected at most 5000000 bytes"),
-    ("rows without end", lambda: {"list.csv": csv_rows(100_000)}, ("targets", "list.csv"), "expected at most 10000 rows"),
-    ("10,000 rows", lambda: {"list.csv": csv_rows(9_990)}, ("targets", "list.csv", "--into", "week.toml"), "a week holds 2000"),
-    ("bad rows", lambda: {"list.csv": csv_rows(2_000, "Z{n}")}, ("targets", "list.csv", "--into", "week.toml"), "row 2001, after"),
+    (
+        "rows without end",
+        lambda: {"list.csv": csv_rows(100_000)},
+        ("targets", "list.csv"),
+        "expected at most 10000 rows",
+    ),
+    ("10,000 rows", lambda: {"list.csv": csv_rows(9_990)}, INTO, "a week holds 2000"),
+    ("bad rows", lambda: {"list.csv": csv_rows(2_000, "Z{n}")}, INTO, "row 2001, after"),
     ("unpacks to 100 MB", lambda: {"list.xlsx": bomb()}, ("targets", "list.xlsx"), "when unpacked"),
     ("claims to be full", lambda: {"list.xlsx": wide()}, ("targets", "list.xlsx"), "at most 200 columns"),
-    ("25 MB plan", lambda: {"plan.json": b"[" + b"1," * 12_500_000 + b"1]"}, ("check", "plan.json"), "expected at most 20000000 bytes"),
-    ("19 MB of no plan", lambda: {"plan.json": b'{"steps": [' + b"{}," * 6_300_000 + b"{}]}"}, ("check", "plan.json"), "no plan made by this"),
-]  # fmt: skip
+    (
+        "25 MB plan",
+        lambda: {"plan.json": b"[" + b"1," * 12_500_000 + b"1]"},
+        ("check", "plan.json"),
+        "expected at most 20000000 bytes",
+    ),
+    (
+        "19 MB of no plan",
+        lambda: {"plan.json": b'{"steps": [' + b"{}," * 6_300_000 + b"{}]}"},
+        ("check", "plan.json"),
+        "no plan made by this",
+    ),
+]
 
 
 @pytest.fixture(scope="module")

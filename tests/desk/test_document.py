@@ -76,7 +76,7 @@ def test_problems_stand_at_their_places(tmp_path: Path) -> None:
     assert document.problems_at(Place.of("rig", "bath"))
     assert not document.problems_at(Place.of("rig", "magnet"))
     assert [document.words(one) for one in document.problems if one.where == "targets[4].sample"] == [
-        'first_week.toml · Gap at 2/3 · sample is "H9": expected a sample of this file (did you mean "H1"?)'
+        'first_week.toml · Gap at 2/3 · sample is "H9": expected a sample of this file (known: H1)'
     ]
     assert document.rig is None
 

@@ -5,6 +5,8 @@ from __future__ import annotations
 from pathlib import Path
 
 import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
 
 from planner.desk.fields import Field, FieldKind, fields_of, inner_of, model_at
 from planner.desk.form import TableForm, target_rows
@@ -127,6 +129,20 @@ def test_a_text_that_is_not_usable_is_answered_with_what_is_wanted(kind: str, ke
     assert said in found.message
 
 
+@settings(max_examples=300, deadline=None)
+@given(
+    st.sampled_from(FIELDS),
+    st.one_of(st.text(max_size=20), st.from_regex(r"[-+\d.eE/ ,;:ToTAKmn%≤]{1,16}", fullmatch=True)),
+)
+def test_any_text_is_either_usable_or_answered(chosen: tuple[type[Table], Field], text: str) -> None:
+    found = explain(chosen[1], text)
+    assert found.usable or found.message
+    if found.usable and found.value is not None:
+        again = explain(chosen[1], shown(found.value))
+        assert again.usable
+        assert again.value == found.value
+
+
 def test_a_meaning_is_said_where_it_says_more_than_the_text() -> None:
     assert explain(_field("hold", "duration"), "90 min").message == "= 1 h 30 min"
     assert explain(_field("hold", "field"), "500 mT").message == ""
@@ -188,6 +204,11 @@ def test_names_that_must_exist_are_offered_and_checked(tmp_path: Path) -> None:
     assert rows["name"].text not in rows["after"].choices
     assert not form.commit("gate", "side").usable
     assert form.commit("after", "Survey, Low-field Hall").usable
+    assert form.commit("after", "Two fifths, slowly").usable
+    rows = {row.key: row for row in form.rows()}
+    assert rows["after"].text == "Two fifths, slowly;"
+    assert form.explain("after", "Two fifths, slowly; Survey").value == ["Two fifths, slowly", "Survey"]
+    assert form.commit("after", rows["after"].text).usable
 
 
 def test_a_key_that_does_not_belong_can_be_taken_out(tmp_path: Path) -> None:

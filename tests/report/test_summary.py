@@ -39,8 +39,8 @@ def test_what_is_done_when_totals_and_reasons() -> None:
         "gap 7.0 %, not proven best",
         "Fan between 2 and 1 · 6 A 2 no time left before the end",
         "warn Fri 02:30 3 helium line: Survey: the gauge comes near the line (value 45.1 %",
-        "as listed 20 14.3 h, 95.6 L 5.3 h, 81.6 L 9.0 h, 14.0 L",
-        "sorted by field 22 8.3 h, 85.6 L 5.3 h, 81.6 L 3.0 h, 4.0 L",
+        "as listed 20 of 10 14.3 h, 95.6 L 5.3 h, 81.6 L 9.0 h, 14.0 L",
+        "sorted by field 22 of 10 8.3 h, 85.6 L 5.3 h, 81.6 L 3.0 h, 4.0 L",
         "A planning aid: it protects neither magnet nor people.",
     ):
         assert part in told

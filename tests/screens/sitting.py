@@ -97,7 +97,7 @@ def screen_text(app: FridgeweekApp) -> str:
 async def sitting(session: Session, size: tuple[int, int] = SMALL) -> AsyncIterator[Sitting]:
     """The program on a screen of that size."""
     app = FridgeweekApp(session)
-    async with app.run_test(size=size) as pilot:
+    async with app.run_test(size=size, notifications=True) as pilot:
         await pilot.pause()
         await pilot.pause()
         try:

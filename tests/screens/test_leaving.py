@@ -120,8 +120,8 @@ def test_unsaved_work_survives_a_closed_terminal(tmp_path: Path) -> None:
     assert Document.open(week).texts == draft.base
     with terminal("open", str(week), state=tmp_path / "state") as program:
         program.until("unsaved work")
-        program.press(b"\r")
-        program.until("Contacts and gate leakage 2")
+        program.press(b"\r")  # the first answer: go on with it
+        program.until("not saved")
 
 
 def test_alone_it_opens_the_demo_week_first_and_the_last_week_then(tmp_path: Path) -> None:
