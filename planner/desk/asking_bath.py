@@ -2,7 +2,10 @@
 
 from __future__ import annotations
 
-from planner.desk.asking import MEASURED, Parts, Script, count, value
+from collections.abc import Generator
+from typing import Any
+
+from planner.desk.asking import MEASURED, Parts, Question, Script, count, value
 from planner.desk.offers import between, number, tidy
 from planner.files.rig import Bath, Cooler, LevelPoint, Lines, Losses, Transfer
 
@@ -18,56 +21,41 @@ def bath_script() -> Script:
         "2 %",
         mark=MEASURED,
     )
-    rows = yield count(
-        (*at, "calibration"),
-        "Rows of the gauge's calibration",
-        "Losses act on litres, the gauge reads per cent.",
-        3,
-        2,
-        50,
-    )
-    level, volume = -1.0, -1.0
-    first = 0.0
-    for row in range(rows):
-        left = rows - row
-        offers = (
-            ("0 %", "0 L")
-            if row == 0
-            else (f"{between(level, 100, left - 1)} %", f"{between(volume, max(72, 1.5 * volume), left - 1)} L")
-        )
-        if left == 1:
-            offers = "100 %" if level < 100 else offers[0], f"{tidy(max(72.0, 1.5 * volume))} L"
-        which = f"Row {row + 1} of {rows}"
-        level = number(
-            (
-                yield value(
-                    LevelPoint,
-                    (*at, "calibration", row, "level"),
-                    f"{which}: level",
-                    "As the gauge reads it, lowest first.",
-                    offers[0],
-                    mark=MEASURED,
-                )
-            ),
-            "percent",
-        )
-        volume = number(
-            (
-                yield value(
-                    LevelPoint,
-                    (*at, "calibration", row, "volume"),
-                    f"{which}: litres in the bath",
-                    "Measured when the bath was filled.",
-                    offers[1],
-                    mark=MEASURED,
-                )
-            ),
-            "L",
-        )
-        first = level if row == 0 else first
-    yield from _lines(first - number(error, "percent"))
+    lowest, highest = yield from _calibration()
+    yield from _lines(lowest - number(error, "percent"))
     yield from _losses()
-    yield from _transfer(level)
+    yield from _transfer(highest)
+
+
+def _calibration() -> Generator[Question, Any, tuple[float, float]]:
+    """The rows of the gauge's table; gives its lowest and its highest level in percent."""
+    at: Parts = ("bath", "calibration")
+    why = "Losses act on litres, the gauge reads per cent."
+    rows = yield count(at, "Rows of the gauge's calibration", why, 3, 2, 50)
+    level, volume, levels = -1.0, -1.0, []
+    for row in range(rows):
+        which = f"Row {row + 1} of {rows}"
+        percent, litres = _next_point(level, volume, rows - row)
+        why = "As the gauge reads it, lowest first."
+        given = yield value(LevelPoint, (*at, row, "level"), f"{which}: level", why, percent, mark=MEASURED)
+        level = number(given, "percent")
+        why = "Measured when the bath was filled."
+        given = yield value(
+            LevelPoint, (*at, row, "volume"), f"{which}: litres in the bath", why, litres, mark=MEASURED
+        )
+        volume = number(given, "L")
+        levels.append(level)
+    return levels[0], levels[-1]
+
+
+def _next_point(level: float, volume: float, left: int) -> tuple[str, str]:
+    """What to offer after a level and a volume, with so many rows left; both are negative before the first."""
+    full_L = max(72.0, 1.5 * volume)
+    if level < 0:
+        return "0 %", "0 L"
+    if left == 1:
+        return "100 %", f"{tidy(full_L)} L"
+    return f"{between(level, 100, left - 1)} %", f"{between(volume, full_L, left - 1)} L"
 
 
 def _lines(least: float) -> Script:

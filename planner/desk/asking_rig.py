@@ -216,6 +216,11 @@ def _stage(wet: bool) -> Script:
         yield from _times("cooling", "from", CoolingPoint, base, highest, (25, 45, 75, 120))
     else:
         yield from _model()
+    yield from _after_ramp(base, cold)
+
+
+def _after_ramp(base: str, cold: bool) -> Script:
+    at: Parts = ("stage",)
     rows = yield count(
         (*at, "after_ramp"),
         "Rows of settling after a ramp",

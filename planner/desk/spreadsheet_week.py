@@ -77,8 +77,7 @@ def read_targets(
         If the sheet or the week cannot be read; if any row is bad, with every bad row and its number, unless
         ``keep_good``; then only if no good row is left.
     """
-    if kind is not None and kind not in TARGET_KINDS:
-        raise InputError([Problem("--kind", "", f'"{kind[:40]}"', f"expected one of {', '.join(TARGET_KINDS)}")])
+    _check_kind(kind)
     request = None if into is None else read_week(into)
     cells = read_sheet(sheet, name)
     found, problems = _rows_of(cells, request, kind)
@@ -101,6 +100,11 @@ def read_targets(
         raise InputError(left_out or [Problem(cells.name, "", "", "there are no rows under the headings")])
     numbers, tables = zip(*found, strict=True)
     return Targets(tables, numbers, tuple(sorted(left_out, key=_row_of)))
+
+
+def _check_kind(kind: str | None) -> None:
+    if kind is not None and kind not in TARGET_KINDS:
+        raise InputError([Problem("kind", "", f'"{kind[:40]}"', f"expected one of {', '.join(TARGET_KINDS)}")])
 
 
 def append_targets(week: Path, targets: Targets) -> None:

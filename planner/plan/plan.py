@@ -5,9 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from datetime import datetime
 from functools import cache
-from typing import TYPE_CHECKING, Annotated, Literal
-
-from pydantic import FailFast
+from typing import TYPE_CHECKING, Literal
 
 from planner.clock import Clock, zone
 from planner.plan.finding import Finding
@@ -94,12 +92,12 @@ class Plan:
     zone: str
     start: datetime
     end: datetime
-    sources: Annotated[tuple[Source, ...], FailFast()]
-    steps: Annotated[tuple[Step, ...], FailFast()]
-    left_out: Annotated[tuple[LeftOut, ...], FailFast()]
+    sources: tuple[Source, ...]
+    steps: tuple[Step, ...]
+    left_out: tuple[LeftOut, ...]
     score: Score
-    compared: Annotated[tuple[HandOrder, ...], FailFast()] = ()
-    findings: Annotated[tuple[Finding, ...], FailFast()] = ()
+    compared: tuple[HandOrder, ...] = ()
+    findings: tuple[Finding, ...] = ()
     recovery: bool = False
     made_by: str = ""
     format: Literal[1] = PLAN_FORMAT

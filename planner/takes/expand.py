@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from planner.files import Request
 from planner.files.start import start_state
+from planner.files.targets import Target
 from planner.moves import Lines, setup_of
 from planner.takes.conditions import CannotError
 from planner.takes.kinds import EXPANDERS, repeated
@@ -29,24 +30,28 @@ def expand(context: Context) -> tuple[list[Take], list[Impossible]]:
             takes += repeated(list(EXPANDERS[kind](context, ask)), ask.repeats)
         except CannotError as error:
             cannot[ask.name] = Impossible(ask, context.user(ask), str(error))
-    while True:
-        stuck = [
-            (take.ask, first)
-            for take in takes
-            for first in _firsts(context, take.ask.name)
-            if first in cannot and take.ask.name not in cannot
-        ]
-        if not stuck:
-            break
-        later, first = stuck[0]
-        cannot[later.name] = Impossible(later, context.user(later), f'comes after "{first}", which cannot be done')
+    asks = {ask.name: ask for ask in context.week.targets}
+    followers: dict[str, list[Target]] = {name: [] for name in asks}
+    for later, firsts in _firsts(context).items():
+        for first in firsts:
+            followers[first].append(asks[later])
+    todo = list(cannot)
+    for first in todo:  # grows while it is walked
+        for follower in followers[first]:
+            if follower.name not in cannot:
+                reason = f'comes after "{first}", which cannot be done'
+                cannot[follower.name] = Impossible(follower, context.user(follower), reason)
+                todo.append(follower.name)
     return [take for take in takes if take.ask.name not in cannot], list(cannot.values())
 
 
-def _firsts(context: Context, name: str) -> list[str]:
-    """Targets that must be done before the named one."""
-    asks = {ask.name: ask for ask in context.week.targets}
-    return [*asks[name].after, *(other.name for other in asks.values() if name in other.before)]
+def _firsts(context: Context) -> dict[str, list[str]]:
+    """For the name of each target, the names of those that must be done before it."""
+    found = {ask.name: list(ask.after) for ask in context.week.targets}
+    for ask in context.week.targets:
+        for later in ask.before:
+            found[later].append(ask.name)
+    return found
 
 
 def precedence(context: Context, takes: list[Take]) -> list[tuple[int, int]]:
@@ -54,10 +59,11 @@ def precedence(context: Context, takes: list[Take]) -> list[tuple[int, int]]:
     places: dict[str, list[int]] = {}
     for at, take in enumerate(takes):
         places.setdefault(take.ask.name, []).append(at)
+    firsts = _firsts(context)
     return [
         (first, later)
         for name, mine in places.items()
-        for other in dict.fromkeys(_firsts(context, name))
+        for other in dict.fromkeys(firsts[name])
         for first in places.get(other, [])
         for later in mine
     ]

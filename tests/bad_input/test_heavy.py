@@ -22,6 +22,7 @@ from tests.cli.run import put
 
 MOST_S, MOST_BYTES = 5.0, 1_000_000_000
 CHECK = ("check", "week.toml")
+PLAN = ("check", "plan.json")
 INTO = ("targets", "list.csv", "--into", "week.toml")
 SLOT = {"from": "Tue 08:00", "to": "Tue 09:00"}
 ROW = '[[targets]]\nname = "{n}"\nkind = "hold"\nsample = "S1"\nfield = "1 T"\nduration = "1 h"\n{more}'
@@ -63,6 +64,8 @@ def csv_rows(count: int, tail: str = "") -> str:
 
 
 HEAVY: list[tuple[str, Callable[[], dict[str, str | bytes]], tuple[str, ...], str]] = [
+    ("empty steps", lambda: {"plan.json": b'{"steps": [' + b"{}," * 99_000 + b"{}]}"}, PLAN, "no plan made by this"),
+    ("numbers for steps", lambda: {"plan.json": b'{"steps": [' + b"1," * 749_000 + b"1]}"}, PLAN, "no plan made by"),
     ("10 MB week", lambda: {"week": base() + "# x\n" * 2_500_000}, CHECK, "expected at most 1000000 bytes"),
     ("10 MB rig", lambda: {"rig": b"#" * 10_000_000}, CHECK, "expected at most 1000000 bytes"),
     ("10,000 targets", lambda: {"week": targets(10_000)}, CHECK, "expected at most"),
@@ -87,13 +90,13 @@ HEAVY: list[tuple[str, Callable[[], dict[str, str | bytes]], tuple[str, ...], st
     (
         "25 MB plan",
         lambda: {"plan.json": b"[" + b"1," * 12_500_000 + b"1]"},
-        ("check", "plan.json"),
+        PLAN,
         "expected at most 20000000 bytes",
     ),
     (
         "19 MB of no plan",
         lambda: {"plan.json": b'{"steps": [' + b"{}," * 6_300_000 + b"{}]}"},
-        ("check", "plan.json"),
+        PLAN,
         "no plan made by this",
     ),
 ]
