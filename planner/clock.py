@@ -8,7 +8,10 @@ from datetime import UTC, datetime, time, timedelta
 from zoneinfo import ZoneInfo, ZoneInfoNotFoundError
 
 WEEKDAYS = ("Mon", "Tue", "Wed", "Thu", "Fri", "Sat", "Sun")
-_WEEKDAY_TIME = re.compile(r"\s*(Mon|Tue|Wed|Thu|Fri|Sat|Sun)[a-z]*\s+([0-9]{1,2}):([0-9]{2})(?::([0-9]{2}))?\s*", re.IGNORECASE)
+_WEEKDAY_TIME = re.compile(
+    r"\s*(Mon|Tue|Wed|Thu|Fri|Sat|Sun)[a-z]*\s+([0-9]{1,2}):([0-9]{2})(?::([0-9]{2}))?\s*",
+    re.IGNORECASE,
+)
 
 
 def zone(name: str) -> ZoneInfo:

@@ -40,9 +40,7 @@ def _calibration() -> Generator[Question, Any, tuple[float, float]]:
         given = yield value(LevelPoint, (*at, row, "level"), f"{which}: level", why, percent, mark=MEASURED)
         level = number(given, "percent")
         why = "Measured when the bath was filled."
-        given = yield value(
-            LevelPoint, (*at, row, "volume"), f"{which}: litres in the bath", why, litres, mark=MEASURED
-        )
+        given = yield value(LevelPoint, (*at, row, "volume"), f"{which}: litres in it", why, litres, mark=MEASURED)
         volume = number(given, "L")
         levels.append(level)
     return levels[0], levels[-1]

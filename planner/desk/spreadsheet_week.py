@@ -81,21 +81,7 @@ def read_targets(
     request = None if into is None else read_week(into)
     cells = read_sheet(sheet, name)
     found, problems = _rows_of(cells, request, kind)
-    judge = _Judge(cells, request)
-    left_out: list[Problem] = []
-    for _ in range(_MOST_ROUNDS):
-        told, bad = judge.problems(found)
-        unread = {_row_of(problem) for problem in problems}
-        problems += [problem for problem in told if _row_of(problem) not in unread or not _follows(problem)]
-        if not keep_good and problems:
-            raise InputError(sorted(problems, key=_row_of))
-        left_out += problems
-        found = [row for row in found if row[0] not in bad and not any(_row_of(one) == row[0] for one in problems)]
-        problems = []
-        if not bad:
-            break
-    else:
-        raise InputError(left_out)
+    found, left_out = _sifted(_Judge(cells, request), found, problems, keep_good)
     if not found:
         raise InputError(left_out or [Problem(cells.name, "", "", "there are no rows under the headings")])
     numbers, tables = zip(*found, strict=True)
@@ -131,6 +117,26 @@ def append_targets(week: Path, targets: Targets) -> None:
 
 
 Numbered = tuple[int, dict[str, Any]]
+
+
+def _sifted(
+    judge: _Judge, found: list[Numbered], problems: list[Problem], keep_good: bool
+) -> tuple[list[Numbered], list[Problem]]:
+    """The good rows, and what is wrong with the others; a good row that needs a bad one is bad too."""
+    left_out: list[Problem] = []
+    for _ in range(_MOST_ROUNDS):
+        told, bad = judge.problems(found)
+        unread = {_row_of(problem) for problem in problems}
+        problems += [problem for problem in told if _row_of(problem) not in unread or not _follows(problem)]
+        if not keep_good and problems:
+            raise InputError(sorted(problems, key=_row_of))
+        dropped = bad | {_row_of(problem) for problem in problems}
+        if not dropped:
+            return found, left_out
+        left_out += problems
+        found = [row for row in found if row[0] not in dropped]
+        problems = []
+    raise InputError(left_out)
 
 
 def _rows_of(cells: Sheet, request: Request | None, kind: str | None) -> tuple[list[Numbered], list[Problem]]:

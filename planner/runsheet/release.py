@@ -11,8 +11,8 @@ from planner.runsheet.wording import clean, significant
 def refuse_unless_runnable(plan: Plan, rig: Rig) -> None:
     """Let a plan pass that may be run.
 
-    A plan that only runs down, calls people and transfers always passes; one that goes on to other work after a recovery
-    is judged by its findings as any other.
+    A plan that only runs down, calls people and transfers always passes; one that goes on to other work after a
+    recovery is judged by its findings as any other.
 
     Raises
     ------

@@ -207,8 +207,9 @@ def test_nothing_is_written_where_the_week_changed_meanwhile(tmp_path: Path) -> 
 
 def test_good_rows_that_need_a_bad_one_go_with_it(tmp_path: Path) -> None:
     week = week_folder(tmp_path)
-    rows = "A,hold,1,1,\nB,hold,1 K,1,\nC,hold,1,1,B\nD,hold,1,1,C\nE,hold,1,1,A\n"
-    put(tmp_path, **{"list.csv": f"name,kind,field (T),duration (h),after\n{rows}"})
+    # the temperature of B may be left out, but not be without its unit
+    rows = "A,hold,1,1,,\nB,hold,1,1,,20\nC,hold,1,1,B,\nD,hold,1,1,C,\nE,hold,1,1,A,\n"
+    put(tmp_path, **{"list.csv": f"name,kind,field (T),duration (h),after,temperature\n{rows}"})
     found = read_targets(tmp_path / "list.csv", into=week, keep_good=True)
     assert [table["name"] for table in found.tables] == ["A", "E"]
     assert [problem.where.split(",")[0] for problem in found.problems] == ["row 3", "row 4", "row 5"]

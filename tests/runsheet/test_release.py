@@ -58,7 +58,7 @@ def test_a_recovery_plan_is_always_written_and_says_so(small: Plan, tmp_path: Pa
 
 
 @pytest.mark.parametrize("kind", [Kind.STOP, Kind.POLICY])
-def test_a_plan_that_measures_after_its_recovery_is_judged_as_any_other(small: Plan, tmp_path: Path, kind: Kind) -> None:
+def test_a_plan_that_measures_after_its_recovery_is_as_any_other(small: Plan, tmp_path: Path, kind: Kind) -> None:
     with pytest.raises(RefusedError):
         write_sheets(replace(with_finding(small, kind), recovery=True), tmp_path)
 
