@@ -68,6 +68,7 @@ class FileActions(App[None]):
 
     @work
     async def offer_draft(self) -> None:
+        """Offer the unsaved work that a closed terminal left behind, if there is any."""
         draft = self.session.draft()
         if draft is None:
             return

@@ -14,7 +14,7 @@ WEEK = FOLDER.parents[1] / "example_plans" / "shared_week.toml"
 
 def main() -> None:
     """Plan the shared week and draw it at a glance."""
-    plan = plan_request(open_week(WEEK), seconds=60)
+    plan = plan_request(open_week(WEEK), seconds=30)
     (FOLDER / "shared_week.svg").write_text(glance_svg(Sheet.of(plan)), encoding="utf-8")
 
 
