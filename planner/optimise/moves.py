@@ -23,10 +23,15 @@ class Costs:
     node_use: Floats
     node_moving: Ints
 
+    @property
+    def between(self) -> Floats:
+        """Seconds plus priced use of the arcs, shape (P, P)."""
+        return np.ascontiguousarray(self.arc_seconds + self.arc_use, dtype=np.float64)
+
     def reach(self, tables: Tables) -> Floats:
         """Seconds plus priced use of the arc from each node (row) to each node (column), shape (N, N)."""
         exits, entries = tables.node[:, EXIT], tables.node[:, ENTRY]
-        return np.asarray((self.arc_seconds + self.arc_use)[np.ix_(exits, entries)], dtype=np.float64)
+        return np.asarray(self.between[np.ix_(exits, entries)])
 
 
 def static_costs(tables: Tables) -> Costs:

@@ -8,7 +8,7 @@ from typing import Any
 
 import numpy as np
 
-from planner.optimise.compiled.changes import BEST, CURRENT, Moves, Search, build_search
+from planner.optimise.compiled.draws import BEST, CURRENT, Moves, Search, build_search
 from planner.optimise.moves import Costs, near_nodes, partners, services_of
 from planner.optimise.problem import Problem
 from planner.optimise.result import Objective
@@ -17,7 +17,6 @@ from planner.optimise.tables import Tables
 PIECE_S = 0.04
 # weight of a take of average prize, in typical arc costs: a quarter loses takes, three times gains none (measured)
 TAKE = 40.0
-HOTTEST = 0.8  # first temperature, in typical arc costs
 
 
 class Annealer:
@@ -35,9 +34,10 @@ class Annealer:
         near = near_nodes(problem, tables, costs)
         self.scale = self._typical(problem, costs.reach(tables), near)
         worth = problem.prize[problem.prize > 0]
-        point = TAKE * self.scale / (float(worth.mean()) if worth.size else 1.0)
+        self.worth = TAKE * self.scale
+        point = self.worth / (float(worth.mean()) if worth.size else 1.0)
         weight = np.array([point * (1.0 + float(problem.prize.sum())), point])
-        moves = Moves(services_of(problem), near, partners(problem))
+        moves = Moves(services_of(problem), near, partners(problem), costs.between)
         self.search: Search = build_search(tables, moves, weight, seed)
         self.trials_per_s = 50.0
         self._fresh = -1
@@ -60,16 +60,15 @@ class Annealer:
         self._fresh = len(order)
 
     def run(self, trials: int, warm: float, warm_end: float) -> bool:
-        """Do ``trials`` trials between two temperatures given as shares of the hottest; whether the best got better."""
+        """Do ``trials`` trials between two temperatures, in takes of average worth; whether the best got better."""
         fresh, self._fresh = self._fresh, -1
-        hot = HOTTEST * self.scale
-        return bool(self.kernels.anneal(self.search, fresh, trials, hot * warm, hot * warm_end))
+        return bool(self.kernels.anneal(self.search, fresh, trials, self.worth * warm, self.worth * warm_end))
 
-    def piece(self, warm: float, warm_end: float, longest_s: float = PIECE_S) -> bool:
+    def piece(self, warm: float, longest_s: float = PIECE_S) -> bool:
         """As `run`, with as many trials as fill a piece of time."""
         began = time.perf_counter()
         trials = max(1, int(self.trials_per_s * min(longest_s, PIECE_S)))
-        better = self.run(trials, warm, warm_end)
+        better = self.run(trials, warm, warm)
         took = max(time.perf_counter() - began, 1e-6)
         self.trials_per_s = min(max(trials / took, 20.0), 4.0 * self.trials_per_s)
         return better

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import os
 import threading
 import time
 from collections.abc import Callable
@@ -9,10 +10,13 @@ from typing import TYPE_CHECKING
 
 from planner.optimise.bounds import Floors, cost_bound, floors, prize_bound
 from planner.optimise.builder import Builder
+from planner.optimise.chains import Beside, Chain
 from planner.optimise.compiled.warm import Compiled, Warmer, compile_all
 from planner.optimise.construct import Constructor
+from planner.optimise.cooling import shares, temperature
 from planner.optimise.exact import is_small, solve_exactly
 from planner.optimise.incumbent import Incumbent
+from planner.optimise.insertion import Insertion
 from planner.optimise.moves import Costs, static_costs
 from planner.optimise.problem import Problem
 from planner.optimise.result import Progress, Result, Stopped
@@ -23,10 +27,11 @@ if TYPE_CHECKING:
     from planner.optimise.cpsat.run import Relaxation
 
 CONSTRUCTIONS = 6  # first orders if the compiled kernels are still to come, or the result is to be reproducible
-CYCLES = (0.08, 0.32, 0.6)  # shares of the time that each cooling takes
-COLD = 0.004  # last temperature as a share of the first
+COOLINGS = 4  # of a reproducible solve
+FILL_S = 0.5  # kept at the end for putting in what still fits, at most a tenth of the time
+OTHER_SEED = 7919  # added for the annealing beside
 DETERMINISTIC_UNITS = 0.2  # of CP-SAT for each second of a reproducible solve
-TRIALS_PER_SECOND = 6000  # work that stands for a second if the solve is to be reproducible
+TRIALS_PER_SECOND = 10_000  # work that stands for a second if the solve is to be reproducible
 
 
 class Solver:
@@ -39,12 +44,14 @@ class Solver:
         seed: int,
         on_progress: Callable[[Progress], None] | None,
         stop: threading.Event | None,
+        *,
+        reproducible: bool,
     ) -> None:
         self.problem = problem
         self.seconds = seconds
         self.seed = seed
         self.stop = stop if stop is not None else threading.Event()
-        self.warmer = Warmer()
+        self.warmer = Warmer(start=not reproducible)
         self.tables: Tables = build_tables(problem)
         self.costs: Costs = static_costs(self.tables)
         self.floors: Floors = floors(problem, self.tables, self.costs)
@@ -103,16 +110,14 @@ class Solver:
                 self.incumbent.bound(cost=objective.cost)
         self.incumbent.report()
 
-    def annealer(self) -> Annealer:
-        """A search that begins at the incumbent."""
-        annealer = Annealer(self.problem, self.tables, self.costs, self.seed, self.warmer.kernels)
-        annealer.restart(self.incumbent.best.order if self.incumbent.best is not None else ())
-        return annealer
+    def annealer(self, seed: int) -> Annealer:
+        """A search that has not begun."""
+        return Annealer(self.problem, self.tables, self.costs, seed, self.warmer.plain)
 
-    def take_from(self, annealer: Annealer) -> None:
-        """Offer what the search found."""
-        if annealer.objective is not None and annealer.objective.better_than(self.incumbent.objective):
-            self.incumbent.offer(annealer.order, "annealing")
+    def chain(self, seed: int) -> Chain:
+        """An annealing by the clock."""
+        insertion = Insertion(self.problem, self.tables)
+        return Chain(self.annealer(seed), insertion, self.incumbent, lambda: self.warmer.kernels)
 
     def relaxation(self, seconds: float, *, deterministic: bool) -> Relaxation:
         """The CP-SAT model, not yet begun."""
@@ -139,30 +144,47 @@ class Solver:
             if builder.close():
                 self.incumbent.offer(builder.items, "CP-SAT")
 
-    def anneal_for_time(self, relaxation: Relaxation) -> None:
-        """Cool three times, longer each time, until the time is used up."""
-        annealer = self.annealer()
-        begin = time.perf_counter()
-        whole = max(self.deadline - begin, 1e-3)
-        finish = begin
-        for share in CYCLES:
-            start, finish = finish, finish + share * whole
-            while not self.late() and not self.proven() and (now := time.perf_counter()) < finish:
-                if not self.warmer.ready:
-                    # as plain Python annealing gets nowhere
-                    self.construct()
-                    continue
-                annealer.kernels = self.warmer.kernels
-                warm = COLD ** ((now - start) / (finish - start))
-                if annealer.piece(warm, warm, finish - now):
-                    self.take_from(annealer)
-                self.take_proposals(relaxation)
-                best = self.incumbent.best
-                if best is not None and best.objective is not None and best.objective.better_than(annealer.objective):
-                    annealer.restart(best.order)
-                self.incumbent.report()
-            if self.incumbent.best is not None:
-                annealer.restart(self.incumbent.best.order)
+    def search_for_time(self) -> None:
+        """Construct until the compiled kernels are there, then anneal; CP-SAT, then a second annealing, beside it."""
+        finish = self.deadline - min(FILL_S, 0.1 * self.seconds)
+
+        def over() -> bool:
+            return self.asked() or self.proven() or time.perf_counter() >= finish
+
+        relaxation = self.relaxation(finish - time.perf_counter(), deterministic=False)
+        second = self.chain(self.seed + OTHER_SEED)
+
+        def bound(_: Callable[[], bool]) -> None:
+            relaxation.run()
+
+        def anneal_too(closing: Callable[[], bool]) -> None:
+            self.anneal(second, finish, lambda: over() or closing())
+
+        beside = Beside([bound, anneal_too] if (os.cpu_count() or 1) > 1 else [bound], relaxation.cancel)
+        chain = self.chain(self.seed)
+
+        def between() -> None:
+            self.take_proposals(relaxation)
+            self.incumbent.report()
+
+        try:
+            while not over() and not self.warmer.ready("anneal"):
+                # as plain Python annealing gets nowhere
+                self.construct()
+                between()
+            self.anneal(chain, finish, over, between)
+        finally:
+            beside.close()
+        late = time.perf_counter() + 0.1 if self.asked() else self.deadline
+        chain.fill(lambda: time.perf_counter() >= late)
+
+    def anneal(
+        self, chain: Chain, finish: float, over: Callable[[], bool], between: Callable[[], None] = lambda: None
+    ) -> None:
+        """Run ``chain`` once its kernel is there."""
+        while not over() and not self.warmer.ready("anneal"):
+            time.sleep(0.05)
+        chain.run(finish - time.perf_counter(), over, between)
 
     def run_relaxation(self, relaxation: Relaxation) -> None:
         """Run it to its end here, stopped from a thread of its own if that is asked for."""
@@ -181,17 +203,31 @@ class Solver:
             over.set()
             watcher.join()
 
-    def anneal_for_work(self, trials: int) -> None:
-        """Cool once in a fixed number of trials."""
-        annealer = self.annealer()
+    def search_for_work(self, trials: int) -> None:
+        """Cool a few times in a fixed number of trials."""
+        annealer = self.annealer(self.seed)
         annealer.kernels = Compiled
-        piece = 200
-        for done in range(0, trials, piece):
-            if self.asked() or self.proven():
-                break
-            if annealer.run(piece, COLD ** (done / trials), COLD ** ((done + piece) / trials)):
-                self.take_from(annealer)
-            self.incumbent.report()
+        piece = 400
+        for share in shares(COOLINGS):
+            best, count = self.incumbent.best, max(1, int(share * trials))
+            annealer.restart(best.order if best is not None else ())
+            fine = self.incumbent.prize_proven
+            for done in range(0, count, piece):
+                if self.asked() or self.proven():
+                    break
+                warm, end = (temperature(min(1.0, at / count), fine=fine) for at in (done, done + piece))
+                annealer.run(min(piece, count - done), warm, end)
+                self.incumbent.report()
+            if annealer.objective is not None and annealer.objective.better_than(self.incumbent.objective):
+                self.incumbent.offer(annealer.order, "annealing")
+            self.fill_in()
+
+    def fill_in(self) -> None:
+        """Put what still fits into the incumbent."""
+        best = self.incumbent.best
+        if best is not None:
+            order = Insertion(self.problem, self.tables).fill(best.order, Compiled, self.asked)
+            self.incumbent.offer(order, "insertion")
 
     def result(self, stopped: Stopped) -> Result:
         """What is known now."""
@@ -245,25 +281,16 @@ def solve(
     ValueError
         If the problem's tables do not fit each other.
     """
-    solver = Solver(problem, seconds, seed, on_progress, stop)
-    try:
-        return _reproducibly(solver) if reproducible else _by_the_clock(solver)
-    finally:
-        solver.warmer.close()
+    solver = Solver(problem, seconds, seed, on_progress, stop, reproducible=reproducible)
+    return _reproducibly(solver) if reproducible else _by_the_clock(solver)
 
 
 def _by_the_clock(solver: Solver) -> Result:
     small = is_small(solver.problem, solver.tables)
-    solver.begin(solver.late, most=1 if solver.warmer.ready or small else CONSTRUCTIONS)
+    solver.begin(solver.late, most=1 if small or solver.warmer.ready("anneal") else CONSTRUCTIONS)
     solver.exactly(solver.late, compiled=False)
     if not solver.proven() and not solver.late():
-        from planner.optimise.cpsat.run import RelaxationThread
-
-        beside = RelaxationThread(solver.relaxation(solver.deadline - time.perf_counter(), deterministic=False))
-        try:
-            solver.anneal_for_time(beside.relaxation)
-        finally:
-            beside.close()
+        solver.search_for_time()
     solver.tighten()
     return solver.result(Stopped.ASKED if solver.asked() else Stopped.TIME)
 
@@ -272,12 +299,12 @@ def _reproducibly(solver: Solver) -> Result:
     compile_all()
     solver.begin(solver.asked, most=CONSTRUCTIONS)
     solver.exactly(solver.asked, compiled=True)
-    work = int(solver.seconds * TRIALS_PER_SECOND)
     if not solver.proven():
-        solver.anneal_for_work(work)
+        solver.search_for_work(int(solver.seconds * TRIALS_PER_SECOND))
         if not solver.asked():
             relaxation = solver.relaxation(solver.seconds * DETERMINISTIC_UNITS, deterministic=True)
             solver.run_relaxation(relaxation)
             solver.take_proposals(relaxation)
+            solver.fill_in()
     solver.tighten()
     return solver.result(Stopped.ASKED if solver.asked() else Stopped.WORK)

@@ -5,8 +5,9 @@ from __future__ import annotations
 import math
 from typing import Any
 
-from planner.optimise.compiled.changes import BEST, CURRENT, NO_END, TRIAL, USED, change, draw, option
+from planner.optimise.compiled.changes import change, option
 from planner.optimise.compiled.decode import EARNED, KEPT, MUSTS, TIME, copy_state, decode
+from planner.optimise.compiled.draws import BEST, CURRENT, NO_END, TRIAL, USED, draw
 from planner.optimise.compiled.jit import entry, kernel
 from planner.optimise.tables import (
     COVER_FIRST,

@@ -1,99 +1,22 @@
-"""The state of the annealing and the random changes it makes to an order."""
+"""The random changes that the annealing makes to an order."""
 
 from __future__ import annotations
 
-from typing import Any, NamedTuple
+from typing import Any
 
-import numpy as np
-
-from planner.optimise.compiled.decode import KEPT, States, build_states
+from planner.optimise.compiled.decode import KEPT
+from planner.optimise.compiled.draws import TRIAL, USED, draw, find
 from planner.optimise.compiled.jit import kernel
-from planner.optimise.problem import Floats, Ints
+from planner.optimise.compiled.ruin import ruin
 from planner.optimise.tables import (
     COVER_FIRST,
     COVER_LAST,
-    MAX_USES,
     OPTION_FIRST,
     OPTION_LAST,
-    Scratch,
-    Tables,
-    build_scratch,
 )
 
-FAILED = 1e300
-NO_END = 1e6  # stands for musts missing where even the end cannot be reached
-CURRENT, TRIAL, BEST, USED = range(4)
+RUINS = 25  # of a hundred changes
 LONGEST = 12  # items of the longest stretch that is moved
-
-
-class Moves(NamedTuple):
-    """What the moves draw from: all services, near predecessors, reversed partners.
-
-    ``near`` (N, K): nodes after which the node is cheaply reached; ``partner`` (N,): the alternative for a reversed
-    stretch (itself if none).
-    """
-
-    services: Ints
-    near: Ints
-    partner: Ints
-
-
-class Search(NamedTuple):
-    """The state of one annealing run; scalars live in arrays so that a call can leave them changed.
-
-    Rows of ``order`` are the current, the trial and the best; ``length`` and rows of ``value`` (3, 4) belong to them:
-    minus musts done, minus prize, cost, end. ``length[3]`` is how much of the current order is used. ``random`` (2,):
-    the states of two generators; ``weight`` (2,): of a must and of a point.
-    """
-
-    tables: Tables
-    scratch: Scratch
-    moves: Moves
-    states: States
-    trial_states: States
-    order: Ints
-    room: Ints
-    length: Ints
-    value: Floats
-    random: Ints
-    weight: Floats
-
-
-def build_search(tables: Tables, moves: Moves, weight: Floats, seed: int) -> Search:
-    """A search that has yet to be given an order (`restart`)."""
-    takes = len(tables.take)
-    most = 2 * takes + int(np.minimum(tables.node[moves.services, MAX_USES], 40).sum()) + 8
-    state = (seed * 2654435761 + 97) % 2147483562 + 1
-    return Search(
-        tables=tables,
-        scratch=build_scratch(tables),
-        moves=moves,
-        states=build_states(tables, most),
-        trial_states=build_states(tables, most),
-        order=np.zeros((3, most), dtype=np.int64),
-        room=np.zeros(LONGEST, dtype=np.int64),
-        length=np.zeros(4, dtype=np.int64),
-        value=np.full((3, 4), FAILED),
-        random=np.array([state, (seed * 40503 + 12345) % 2147483398 + 1], dtype=np.int64),
-        weight=weight,
-    )
-
-
-@kernel
-def draw(random: Any, below: int) -> int:
-    """A number from 0 to ``below - 1`` (L'Ecuyer 1988, Commun. ACM 31, 742: two combined congruential generators)."""
-    random[0] = random[0] * 40014 % 2147483563
-    random[1] = random[1] * 40692 % 2147483399
-    return int((random[0] - random[1]) % 2147483562 % below)
-
-
-@kernel
-def find(Q: Any, length: int, node: int) -> int:
-    """Position of ``node`` in the trial, -1 if it is not there."""
-    for position in range(length):
-        if Q.order[TRIAL, position] == node:
-            return position
-    return -1
 
 
 @kernel
@@ -216,6 +139,8 @@ def held(Q: Any, take: int, length: int) -> bool:
 @kernel
 def change(Q: Any, length: int) -> Any:
     """Make one random change to ``Q.trial``: (new length, first changed position)."""
+    if draw(Q.random, 100) < RUINS:
+        return ruin(Q, length)
     kind = draw(Q.random, 100)
     used = min(Q.length[USED], length)
     services = len(Q.moves.services)

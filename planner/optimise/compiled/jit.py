@@ -14,9 +14,11 @@ from pathlib import Path
 from typing import Any
 
 import numba
+from numba.core.options import DefaultOptions
 
 _KERNELS: dict[str, Any] = {}
 _FILES = sorted([*Path(__file__).parent.glob("*.py"), Path(__file__).parent.parent / "tables.py"])
+_NEWEST = max(path.stat().st_mtime for path in _FILES)
 _STAMP = hashlib.sha256(b"".join(path.read_bytes() for path in _FILES)).hexdigest()
 
 
@@ -31,13 +33,17 @@ def entry(function: Callable[..., Any]) -> Any:
 
 
 def _compile(function: Callable[..., Any], *, inner: bool) -> Any:
-    compiled = numba.njit(nogil=True, _nrt=False, no_cfunc_wrapper=True, no_cpython_wrapper=inner)(function)
-    template = compiled.get_call_template
+    options = {"nogil": True, "no_cfunc_wrapper": True, "no_cpython_wrapper": inner}
+    if hasattr(DefaultOptions, "_nrt"):
+        options["_nrt"] = False  # nothing is allocated, so nothing need be counted
+    compiled = numba.njit(**options)(function)
+    template = getattr(compiled, "get_call_template", None)
+    if template is not None:
 
-    def without_literals(args: Any, keywords: Any) -> Any:
-        return template(tuple(numba.types.unliteral(arg) for arg in args), keywords)
+        def without_literals(args: Any, keywords: Any) -> Any:
+            return template(tuple(numba.types.unliteral(arg) for arg in args), keywords)
 
-    compiled.get_call_template = without_literals  # else each constant handed over is compiled for on its own
+        compiled.get_call_template = without_literals  # else each constant handed over is compiled for on its own
     if not inner:
         _cache(compiled)
     _KERNELS[function.__name__] = compiled
@@ -49,7 +55,9 @@ def _cache(compiled: Any) -> None:
         compiled.enable_caching()
     except RuntimeError:  # no folder can be written: compile anew in each process
         return
-    compiled._cache._cache_file._source_stamp = _STAMP
+    file: Any = getattr(getattr(compiled, "_cache", None), "_cache_file", None)
+    if hasattr(file, "_source_stamp"):
+        file._source_stamp = _STAMP
 
 
 class Plain:
@@ -79,9 +87,20 @@ class Plain:
             raise AttributeError(name) from None
 
 
+def cache_folder() -> Path | None:
+    """Where compiled kernels are kept; None if no folder can be written."""
+    found = getattr(_KERNELS["anneal"].stats, "cache_path", None) if "anneal" in _KERNELS else None
+    return Path(found) if found else None
+
+
 def cache_is_warm(name: str) -> bool:
     """Whether a compiled copy of kernel ``name`` seems to lie on disk, by time stamps: a guess that costs only time."""
-    folder = Path(_KERNELS[name].stats.cache_path or "")
-    newest = max(path.stat().st_mtime for path in _FILES)
+    folder = cache_folder()
+    if folder is None:
+        return False
     source = Path(_KERNELS[name].py_func.__code__.co_filename).stem
-    return any(path.stat().st_mtime > newest for path in folder.glob(f"{source}.{name}-*.nbi"))
+    # the index is written before what it points to
+    return all(
+        any(path.stat().st_mtime > _NEWEST for path in folder.glob(f"{source}.{name}-*.{kind}"))
+        for kind in ("nbi", "nbc")
+    )

@@ -18,7 +18,7 @@ from planner.optimise.problem import Problem
 from planner.optimise.tables import Tables
 
 LIGHT_SHARE = 0.1  # of the time that the light model may take
-MOST_NODES = 420  # beyond, building the model alone takes longer than it brings
+MOST_NODES = 150  # beyond, a second annealing brings more in the time (measured)
 
 
 class BrokenModelError(AssertionError):
@@ -153,32 +153,3 @@ class Relaxation:
     def _propose(self, order: list[int]) -> None:
         with self._lock:
             self._orders.append(order)
-
-
-class RelaxationThread:
-    """A relaxation that runs beside the search and is surely over after `close`."""
-
-    def __init__(self, relaxation: Relaxation) -> None:
-        self.relaxation = relaxation
-        self.error: BaseException | None = None
-        self._thread = threading.Thread(target=self._run, name="relaxation")
-        self._thread.start()
-
-    def _run(self) -> None:
-        try:
-            self.relaxation.run()
-        except BaseException as error:  # handed to the caller by `close`
-            self.error = error
-
-    @property
-    def running(self) -> bool:
-        """Whether it is still at work."""
-        return self._thread.is_alive()
-
-    def close(self) -> None:
-        """Stop, wait for the thread, and raise what went wrong in it."""
-        while self._thread.is_alive():
-            self.relaxation.cancel()
-            self._thread.join(0.01)
-        if self.error is not None:
-            raise self.error
