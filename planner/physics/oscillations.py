@@ -109,9 +109,10 @@ def thermal_damping(temperature_K: ArrayLike, field_T: ArrayLike, mass_ratio: Ar
     """
     x = _argument(temperature_K, field_T, mass_ratio)
     # X/sinh X = 2X·e^(−X)/(1 − e^(−2X)): no overflow at large X, and 1 in the limit X → 0.
+    # Below X = 1e-4 the series 1 − X²/6 is exact to the last digit and never rounds above 1.
     with np.errstate(invalid="ignore"):
         factor = 2.0 * x * np.exp(-x) / -np.expm1(-2.0 * x)
-    return as_values(np.where(x > 0.0, factor, 1.0))
+    return as_values(np.where(x > 1e-4, factor, 1.0 - x * x / 6.0))
 
 
 def disorder_damping(dingle_K: ArrayLike, field_T: ArrayLike, mass_ratio: ArrayLike) -> Values:

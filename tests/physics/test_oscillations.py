@@ -74,7 +74,8 @@ def test_thermal_damping_is_a_sinusoid_averaged_over_the_fermi_edge() -> None:
 @given(st.floats(0.0, 20.0), st.floats(0.0, 20.0), st.floats(0.05, 20.0))
 def test_hotter_never_gives_larger_oscillations(one_K: float, other_K: float, field_T: float) -> None:
     cold, warm = osc.thermal_damping(sorted((one_K, other_K)), field_T, 0.067)
-    assert 0.0 <= warm <= cold <= 1.0
+    assert 0.0 <= warm <= np.nextafter(cold, 2.0)  # the last digit is rounding
+    assert cold <= 1.0
 
 
 @pytest.mark.parametrize(

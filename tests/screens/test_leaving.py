@@ -28,6 +28,11 @@ PATIENCE_S = 60.0
 pytestmark = pytest.mark.skipif(os.name == "nt", reason="needs a pseudo-terminal")
 
 
+def _hangs_up() -> None:
+    """A terminal's child hears the hang-up even where the tests themselves were started deaf to it."""
+    signal.signal(signal.SIGHUP, signal.SIG_DFL)
+
+
 class Terminal:
     """A program in a terminal of 80 × 24."""
 
@@ -38,7 +43,7 @@ class Terminal:
         env = {**os.environ, "XDG_STATE_HOME": str(state), "TERM": "xterm-256color", "PYTHONPATH": str(ROOT)}
         self.process = subprocess.Popen(
             [sys.executable, "-m", "planner", *arguments],
-            stdin=inner, stdout=inner, stderr=inner, env=env, cwd=state, start_new_session=True,
+            stdin=inner, stdout=inner, stderr=inner, env=env, cwd=state, start_new_session=True, preexec_fn=_hangs_up,
         )  # fmt: skip
         os.close(inner)
         self.seen = b""
